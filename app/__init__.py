@@ -1,0 +1,1 @@
+"""The desktop program: window, bench and plots around the solver."""

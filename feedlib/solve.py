@@ -1,0 +1,58 @@
+"""Solve a plan: compile its topology, evaluate it at all asked frequencies, answer."""
+
+from __future__ import annotations
+
+import numpy as np
+
+from feedlib.answer import Answer, Solved
+from feedlib.errors import SolveError
+from feedlib.flows import drive, line_values, network_of
+from feedlib.parts import Radio
+from feedlib.plan import Plan
+from feedlib.topology import Topology, compile_plan
+from feedlib.undetermined import refuse_undetermined
+
+
+def solve(plan: Plan, topology: Topology | None = None) -> Answer:
+    """The answer to a plan; SolveError names the part that stops it.
+
+    topology : that of an earlier plan, used again when it still fits.
+    """
+    radio = _only_radio(plan)
+    frequency_hz = _frequencies(plan)
+    _refuse_uncovered(plan, frequency_hz)
+    refuse_undetermined(plan)
+    if topology is None or not topology.fits(plan):
+        topology = compile_plan(plan)
+    network = network_of(plan, topology, line_values(plan, topology), frequency_hz)
+    solved = Solved(network, drive(network, radio), radio)
+    return Answer(solved, plan.grid_hz().size, tuple(c.name for c in plan.channels))
+
+
+def _only_radio(plan: Plan) -> Radio:
+    radios = [p for p in plan.parts if isinstance(p.part, Radio)]
+    if not radios:
+        raise SolveError("the plan has no radio; put one on the bench")
+    if len(radios) > 1:
+        raise SolveError("the plan has more than one radio; take all but one off", part=radios[1].id)
+    assert isinstance(radios[0].part, Radio)
+    return radios[0].part
+
+
+def _frequencies(plan: Plan) -> np.ndarray[tuple[int], np.dtype[np.float64]]:
+    """The grid, then the mark, the band's edges and the channels."""
+    band = plan.band
+    rest = [band.marked_hz, band.start_hz, band.stop_hz, *(c.hz for c in plan.channels)]
+    return np.concatenate([plan.grid_hz(), rest])
+
+
+def _refuse_uncovered(plan: Plan, frequency_hz: np.ndarray[tuple[int], np.dtype[np.float64]]) -> None:
+    low, high = float(frequency_hz.min()), float(frequency_hz.max())
+    for placed in plan.parts:
+        covers = placed.part.covers_hz()
+        if covers is not None and not (covers[0] <= low and high <= covers[1]):
+            raise SolveError(
+                f"its data covers {covers[0] / 1e6:.12g} to {covers[1] / 1e6:.12g} MHz, "
+                f"the plan asks for {low / 1e6:.12g} to {high / 1e6:.12g} MHz",
+                part=placed.id,
+            )

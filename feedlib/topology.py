@@ -1,0 +1,358 @@
+"""A plan's topology, compiled once: which operation follows which, and where each port's state stands.
+
+Edges that no loop crosses make the graph a tree of blocks, rooted at the radio. Single elements are cascaded from the
+antennas to the radio and back; what loops tie together, and parts given by a matrix, are blocks that
+`feedlib.scatter` answers. Knows no values: lengths, impedances, frequencies.
+"""
+
+from __future__ import annotations
+
+from collections import deque
+from dataclasses import dataclass, replace
+
+import numpy as np
+
+from feedlib.conventions import Index
+from feedlib.graph import OPEN, Element, Graph, Piece, blocks_of, graph_of, joins_away, piece_at
+from feedlib.parts import Antenna, Radio
+from feedlib.parts.base import Junction, Lines, TwoPort
+from feedlib.plan import Join, Plan, Port
+
+Rows = slice | Index
+RESCALE_AFTER = 8
+"""Joins multiply sizes: a join that gathers more ends than this brings its state back to the size of one."""
+
+
+@dataclass(frozen=True, slots=True)
+class LineBatch:
+    """Lines of one height: edges `up` look through the lines `rows` at edges `down`."""
+
+    up: slice
+    down: Rows
+    rows: slice
+
+
+@dataclass(frozen=True, slots=True)
+class JoinBatch:
+    """Parallel joins of one height: edges `up` look at edges `first` and `second` side by side."""
+
+    up: slice
+    first: Rows
+    second: Rows
+    rescale: bool
+
+
+@dataclass(frozen=True, slots=True)
+class ChainOp:
+    """A two-port that is no line; turned when its port 2 faces the root."""
+
+    up: int
+    down: int
+    part: int
+    turned: bool
+
+
+@dataclass(frozen=True, slots=True)
+class Core:
+    """Elements that loops tie together, as rows of one matrix.
+
+    lines : row in the line table of each element (OPEN = no line); starts : its first matrix row; tied : pairs of
+    rows at one inner edge, whose current leaves the first; inner : those edges; outer : rows that lead out.
+    """
+
+    elements: list[Element]
+    lines: list[int]
+    starts: list[int]
+    tied: list[tuple[int, int]]
+    inner: list[int]
+    outer: list[int]
+
+
+@dataclass(frozen=True, slots=True)
+class BlockOp:
+    """A block of many ports: its port `port` is at edge `up`, the others, in order, at edges `down`.
+
+    part : the plan's part with a matrix of its own; None when `core` says what is inside.
+    """
+
+    up: int
+    down: list[int]
+    port: int
+    part: int | None
+    core: Core | None
+
+
+Op = LineBatch | JoinBatch | ChainOp | BlockOp
+Shape = tuple[tuple[str, type, int, int], ...]
+
+
+@dataclass(frozen=True, slots=True)
+class Topology:
+    """A compiled plan.
+
+    ops : from the ends to the roots. ends : part index of the end at edge n, for the first edges.
+    lines : (part, line) of each row of the line table. roots : (edge, part) where each piece hangs, the radio's first.
+    cascaded : edges with a state; edges : all, those inside cores last; one more row, always zero, serves the rest.
+    port_edge, port_sign : per port of the plan, in order: its edge, and +1 where the edge's current flows into the
+    part; part_start : where the ports of each part begin.
+    far : per port: +1 where the edge's current runs from near to far, 0 where the radio does not reach.
+    """
+
+    shape: Shape
+    joins: tuple[Join, ...]
+    ops: list[Op]
+    ends: list[int]
+    lines: list[tuple[int, int]]
+    roots: list[tuple[int, int]]
+    cascaded: int
+    edges: int
+    port_row: dict[Port, int]
+    port_edge: Index
+    port_sign: Index
+    part_start: Index
+    far: Index
+    line_planes: dict[tuple[int, int], tuple[tuple[int, int], tuple[int, int]]]
+
+    def fits(self, plan: Plan) -> bool:
+        """Whether the plan has this very topology, so that only values differ."""
+        return (plan.joins is self.joins or plan.joins == self.joins) and shape_of(plan) == self.shape
+
+
+def shape_of(plan: Plan) -> Shape:
+    """What of the parts the topology depends on."""
+    return tuple(
+        (p.id, type(p.part), p.part.ports, p.part.line_count if isinstance(p.part, Lines) else 0)
+        for p in plan.parts
+    )
+
+
+def compile_plan(plan: Plan) -> Topology:
+    """The topology of a plan; a half-built one compiles too."""
+    return _Compiler(plan).topology()
+
+
+class _Compiler:
+    """Finds the operations piece by piece, then numbers the edges so that each batch writes one slice."""
+
+    def __init__(self, plan: Plan) -> None:
+        self.plan = plan
+        self.graph: Graph = graph_of(plan)
+        self.edge_count = len(self.graph.ends)
+        self.found: list[tuple[int, Op]] = []  # height, operation on edges by their first numbers
+        self.lines: list[tuple[int, int, int, Element]] = []  # height, up, down, element
+        self.joins: list[tuple[int, int, int, int, bool]] = []  # height, up, first, second, rescale
+        self.ends: list[tuple[int, int]] = []  # edge, part
+        self.height: dict[int, int] = {}
+        self.weight: dict[int, int] = {}
+        self.into: dict[int, int] = {}  # edge -> element that its current flows into
+        self.roots: list[tuple[int, int]] = []
+        self.reached: set[int] = set()
+        self.number: dict[int, int] = {}
+
+    def topology(self) -> Topology:
+        elements = self.graph.elements
+        terminals = [
+            (n, e)
+            for n, e in enumerate(elements)
+            if e.part != OPEN and isinstance(self.plan.parts[e.part].part, Radio | Antenna)
+        ]
+        terminals.sort(key=lambda t: not isinstance(self.plan.parts[t[1].part].part, Radio))
+        seen: set[int] = set()
+        for n, element in terminals:
+            if n not in seen:
+                piece = piece_at(self.graph, n)
+                seen.update(piece.order)
+                self._grow(piece)
+                if not self.roots and isinstance(self.plan.parts[element.part].part, Radio):
+                    self.reached = set(self.into)
+                self.roots.append((element.edges[0], element.part))
+        return self._numbered()
+
+    def _grow(self, piece: Piece) -> None:
+        for group in reversed(blocks_of(self.graph, piece)[1:]):
+            up = piece.up[group[0]]
+            self.into[up] = group[0]
+            if any(edge in piece.loops for edge in self.graph.elements[group[0]].edges):
+                self._core(group, up)
+            else:
+                self._single(self.graph.elements[group[0]], up)
+
+    def _single(self, element: Element, up: int) -> None:
+        others = [edge for edge in element.edges if edge != up]
+        height = 1 + max((self.height[e] for e in others), default=-1)
+        part = None if element.part == OPEN else self.plan.parts[element.part].part
+        if not others:
+            self.ends.append((up, element.part))
+        elif isinstance(part, Junction):
+            self._joined(others, up)
+            return
+        elif element.line is not None:
+            self.lines.append((height, up, others[0], element))
+        elif isinstance(part, TwoPort):
+            self.found.append((height, ChainOp(up, others[0], element.part, element.edges[1] == up)))
+        else:
+            self.found.append((height, BlockOp(up, others, element.edges.index(up), element.part, None)))
+        self.height[up] = height
+        self.weight[up] = self.weight[others[0]] if len(others) == 1 else 1
+
+    def _joined(self, edges: list[int], up: int) -> None:
+        """A tee as joins of two in a balanced tree, so that a wide one is no deeper than it must be."""
+        queue = deque(sorted(edges, key=self.height.__getitem__))
+        while len(queue) > 1:
+            first, second = queue.popleft(), queue.popleft()
+            if queue:
+                out, self.edge_count = self.edge_count, self.edge_count + 1
+            else:
+                out = up
+            weight = self.weight[first] + self.weight[second]
+            rescale = weight > RESCALE_AFTER
+            self.height[out] = 1 + max(self.height[first], self.height[second])
+            self.weight[out] = 1 if rescale else weight
+            self.joins.append((self.height[out], out, first, second, rescale))
+            queue.append(out)
+
+    def _core(self, group: list[int], up: int) -> None:
+        elements, inside = self.graph.elements, set(group)
+        starts = np.cumsum([0, *(len(elements[e].edges) for e in group)]).tolist()
+        rows: dict[int, list[int]] = {}
+        for e, start in zip(group, starts, strict=False):
+            for n, edge in enumerate(elements[e].edges):
+                rows.setdefault(edge, []).append(start + n)
+        tied, inner, outer = [], [], []
+        for edge, at in rows.items():
+            a, b = self.graph.ends[edge]
+            if len(at) == 2:
+                # rows come in group order; the current leaves the edge's first element
+                tied.append((at[0], at[1]) if a == b or group.index(a) < group.index(b) else (at[1], at[0]))
+                inner.append(edge)
+                self.into[edge] = b
+            else:
+                outer.append(edge)
+        assert inside
+        lines = [OPEN] * len(group)
+        core = Core(
+            [elements[e] for e in group], lines, starts[:-1], tied, inner, [rows[e][0] for e in outer]
+        )
+        others = [e for e in outer if e != up]
+        height = 1 + max((self.height[e] for e in others), default=-1)
+        self.found.append((height, BlockOp(up, others, outer.index(up), None, core)))
+        self.height[up], self.weight[up] = height, 1
+
+    def _numbered(self) -> Topology:
+        number = self.number
+        self._take([edge for edge, _ in self.ends])
+        ops: list[Op] = []
+        lines: list[Element] = []
+        at_height: dict[int, list[Op]] = {}
+        for height, op in self.found:
+            at_height.setdefault(height, []).append(op)
+        line_rows = _by_height(self.lines)
+        join_rows = _by_height(self.joins)
+        for height in sorted({*at_height, *line_rows, *join_rows}):
+            if height in line_rows:
+                found = line_rows[height]
+                rows = slice(len(lines), len(lines) + len(found))
+                lines.extend(element for *_, element in found)
+                down = _rows([number[d] for _, _, d, _ in found])
+                ops.append(LineBatch(self._take([up for _, up, *_ in found]), down, rows))
+            for rescale in (False, True):
+                some = [j for j in join_rows.get(height, ()) if j[4] == rescale]
+                if some:
+                    first, second = _rows([number[j[2]] for j in some]), _rows([number[j[3]] for j in some])
+                    ops.append(JoinBatch(self._take([j[1] for j in some]), first, second, rescale))
+            for op in at_height.get(height, ()):
+                assert isinstance(op, ChainOp | BlockOp)
+                up = self._take([op.up]).start
+                if isinstance(op, ChainOp):
+                    ops.append(replace(op, up=up, down=number[op.down]))
+                else:
+                    ops.append(replace(op, up=up, down=[number[d] for d in op.down]))
+        cascaded = len(number)
+        for n, op in enumerate(ops):
+            if isinstance(op, BlockOp) and op.core is not None:
+                self._take(op.core.inner)
+                rows_of = []
+                for element in op.core.elements:
+                    rows_of.append(OPEN if element.line is None else len(lines))
+                    if element.line is not None:
+                        lines.append(element)
+                ops[n] = replace(
+                    op, core=replace(op.core, lines=rows_of, inner=[number[e] for e in op.core.inner])
+                )
+        return self._described(ops, lines, cascaded)
+
+    def _described(self, ops: list[Op], lines: list[Element], cascaded: int) -> Topology:
+        number, plan, graph = self.number, self.plan, self.graph
+        ports = [port for placed in plan.parts for port in placed.ports()]
+        ends = [self._plane(*graph.at_port[port]) for port in ports]
+        return Topology(
+            shape=shape_of(plan),
+            joins=plan.joins,
+            ops=ops,
+            ends=[part for _, part in self.ends],
+            lines=[(e.part, e.line or 0) for e in lines],
+            roots=[(number[edge], part) for edge, part in self.roots],
+            cascaded=cascaded,
+            edges=len(number),
+            port_row={port: n for n, port in enumerate(ports)},
+            port_edge=np.array([edge for edge, _ in ends], np.intp),
+            port_sign=np.array([sign for _, sign in ends], np.intp),
+            part_start=np.cumsum([0, *(p.part.ports for p in plan.parts)], dtype=np.intp)[:-1],
+            far=self._far(ports),
+            line_planes={
+                (e.part, e.line): (self._plane_of(e, 0), self._plane_of(e, 1))
+                for e in lines
+                if e.line is not None
+            },
+        )
+
+    def _plane(self, element: int, terminal: int) -> tuple[int, int]:
+        """Edge at a terminal, and +1 where its current flows into the element; the zero row where nothing drives."""
+        edges = self.graph.elements[element].edges
+        edge = edges[terminal]
+        if edge not in self.into:
+            return len(self.number), 1
+        a, b = self.graph.ends[edge]
+        into = edges.index(edge) != terminal if a == b else self.into[edge] == element
+        return self.number[edge], 1 if into else -1
+
+    def _plane_of(self, element: Element, terminal: int) -> tuple[int, int]:
+        edge = element.edges[terminal]
+        return self.number[edge], 1 if self.graph.elements[self.into[edge]] is element else -1
+
+    def _far(self, ports: list[Port]) -> Index:
+        """Tree edges run from near to far as they are; inside cores the count of joins decides."""
+        far = np.zeros(len(ports), np.intp)
+        row = {port: n for n, port in enumerate(ports)}
+        radio = next((p.id for p in self.plan.parts if isinstance(p.part, Radio)), None)
+        away = joins_away(self.plan, radio) if radio is not None else {}
+        for port, (element, terminal) in self.graph.at_port.items():
+            if self.graph.elements[element].edges[terminal] in self.reached:
+                far[row[port]] = 1
+        for a, b in self.plan.joins:
+            if far[row[a]]:
+                near = b if away[b.part] < away[a.part] else a
+                _, sign = self._plane(*self.graph.at_port[near])
+                far[row[a]] = far[row[b]] = -sign
+        return far
+
+    def _take(self, edges: list[int]) -> slice:
+        """Give the next numbers to `edges`."""
+        start = len(self.number)
+        for edge in edges:
+            self.number[edge] = len(self.number)
+        return slice(start, len(self.number))
+
+
+def _by_height(rows: list[tuple]) -> dict[int, list[tuple]]:  # type: ignore[type-arg]
+    found: dict[int, list[tuple]] = {}  # type: ignore[type-arg]
+    for row in rows:
+        found.setdefault(row[0], []).append(row)
+    return found
+
+
+def _rows(numbers: list[int]) -> Rows:
+    """A slice where the numbers run on, an index array otherwise."""
+    if numbers == list(range(numbers[0], numbers[0] + len(numbers))):
+        return slice(numbers[0], numbers[0] + len(numbers))
+    return np.array(numbers, np.intp)
