@@ -279,9 +279,7 @@ class Solved:
         power = (v.real * i.real + v.imag * i.imag) / self.radio.power_w
         into = power[..., topology.port_edge, :] * topology.port_sign[:, None]
         lost = _frozen(np.add.reduceat(into, topology.part_start, axis=-2))
-        return {
-            p.id: lost[..., n, :] for n, p in enumerate(plan.parts) if not isinstance(p.part, Radio | Antenna)
-        }
+        return {p.id: lost[..., n, :] for n, p in enumerate(plan.parts) if not isinstance(p.part, Radio | Antenna)}
 
     def at_port(self, port: Port) -> tuple[ComplexArray, ComplexArray]:
         """Voltage, and current into the part, each (F,)."""
@@ -317,10 +315,7 @@ class Solved:
             return _frozen(np.full(total, np.inf))
         step = max(1, int(MAX_BYTES / 8 / (16 * (count + 1) ** 2)))
         apart = ~np.eye(count, dtype=bool)
-        loudest = [
-            np.abs(self.harness_s(slice(n, n + step))[1:, 1:])[apart].max(axis=0)
-            for n in range(0, total, step)
-        ]
+        loudest = [np.abs(self.harness_s(slice(n, n + step))[1:, 1:])[apart].max(axis=0) for n in range(0, total, step)]
         with np.errstate(divide="ignore"):
             return _frozen(-20 * np.log10(np.concatenate(loudest)) + 0.0)
 

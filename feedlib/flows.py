@@ -68,9 +68,7 @@ def _lines(plan: Plan, part: int) -> tuple[Line, ...]:
     try:
         return placed.part.lines(None if cable is None else plan.cables.get(cable))
     except LookupError:
-        raise SolveError(
-            f"its cable {cable!r} is not in the plan; choose another or add it", part=placed.id
-        ) from None
+        raise SolveError(f"its cable {cable!r} is not in the plan; choose another or add it", part=placed.id) from None
 
 
 def line_table(values: LineValues, frequency_hz: Array) -> LineTable:
@@ -156,9 +154,7 @@ def _reduced(plan: Plan, core: Core, table: LineTable, frequency_hz: Array) -> t
         s, inside = joined(matrix, core.tied, core.outer)
     except Undetermined:
         names = [plan.parts[e.part].id for e in core.elements]
-        raise SolveError(
-            "it is on a loop whose circulating current is not determined", part=names[0]
-        ) from None
+        raise SolveError("it is on a loop whose circulating current is not determined", part=names[0]) from None
     return Dense(s, np.full(len(core.outer), WAVE_OHM)), inside
 
 
@@ -172,13 +168,9 @@ def _waves(plan: Plan, part: int, line: int, table: LineTable, frequency_hz: Arr
         return np.stack([np.stack([same, across], -2), np.stack([across, same], -2)], -3)
     thing = plan.parts[part].part
     if isinstance(thing, Junction):
-        return np.broadcast_to(
-            (2 / thing.ports - np.eye(thing.ports))[..., None], (thing.ports, thing.ports, 1)
-        )
+        return np.broadcast_to((2 / thing.ports - np.eye(thing.ports))[..., None], (thing.ports, thing.ports, 1))
     if isinstance(thing, TwoPort):
-        a, b, c, d, k = (
-            np.broadcast_to(np.asarray(x), frequency_hz.shape) for x in thing.chain(frequency_hz)
-        )
+        a, b, c, d, k = (np.broadcast_to(np.asarray(x), frequency_hz.shape) for x in thing.chain(frequency_hz))
         b, c = b / WAVE_OHM, c * WAVE_OHM
         den = a + b + c + d
         return np.array([[(a + b - c - d) / den, 2 * k / den], [2 * k / den, (d + b - c - a) / den]])
@@ -199,9 +191,7 @@ def end_states(network: Network) -> State:
     return v, i
 
 
-def look_up(
-    network: Network, ends: State
-) -> tuple[ComplexArray, ComplexArray, dict[int, Array], dict[int, Response]]:
+def look_up(network: Network, ends: State) -> tuple[ComplexArray, ComplexArray, dict[int, Array], dict[int, Response]]:
     """States of all cascaded edges (..., E, F), looking away from the root.
 
     Also, by edge, the scale of each rescaled join and the response of each block, for the way back.

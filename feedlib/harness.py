@@ -129,9 +129,7 @@ class _Assembly:
         """Carry the ways below an operation to its upper edge, and fill S where two of them meet."""
         if isinstance(op, LineBatch):
             k = self.network.table.k[..., op.rows, :]
-            for n, (up, down) in enumerate(
-                zip(range(op.up.start, op.up.stop), _numbers(op.down), strict=True)
-            ):
+            for n, (up, down) in enumerate(zip(range(op.up.start, op.up.stop), _numbers(op.down), strict=True)):
                 self._carry(up, [down], [k[..., n, :]], [k[..., n, :]])
         elif isinstance(op, ChainOp):
             along = np.broadcast_to(self.network.chains[op.up].k, self.network.frequency_hz.shape)
@@ -149,9 +147,7 @@ class _Assembly:
             down = [k[..., n, :] for n in range(len(op.down))]
             self._carry(op.up, op.down, down, [self.turns[d, op.up] for d in op.down])
 
-    def _carry(
-        self, up: int, edges: list[int], down: list[ComplexArray], upwards: list[ComplexArray]
-    ) -> None:
+    def _carry(self, up: int, edges: list[int], down: list[ComplexArray], upwards: list[ComplexArray]) -> None:
         found = [
             (edge, *self.below[edge], d, u)
             for edge, d, u in zip(edges, down, upwards, strict=True)

@@ -75,9 +75,7 @@ class Sweep(Record):
 
 def _check_grid(grid: Band | Sweep) -> None:
     if grid.stop_hz < grid.start_hz:
-        raise FieldError(
-            "stop_hz", f"wants at least start_hz ({grid.start_hz:.12g}), got {grid.stop_hz:.12g}"
-        )
+        raise FieldError("stop_hz", f"wants at least start_hz ({grid.start_hz:.12g}), got {grid.stop_hz:.12g}")
     if grid.points == 1 and grid.start_hz != grid.stop_hz:
         raise FieldError("points", "1 point needs start_hz and stop_hz to be equal")
 
@@ -167,9 +165,7 @@ class Plan:
 
     def __post_init__(self) -> None:
         if not (np.isfinite(self.reference_ohm) and self.reference_ohm > 0):
-            raise PlanError(
-                f"wants a number of ohm, more than 0, got {self.reference_ohm}", field="reference_ohm"
-            )
+            raise PlanError(f"wants a number of ohm, more than 0, got {self.reference_ohm}", field="reference_ohm")
         s, b = self.sweep, self.band
         if s is not None and not (s.start_hz <= b.start_hz and b.stop_hz <= s.stop_hz):
             raise PlanError("the sweep wants to hold the whole band", field="sweep")

@@ -38,9 +38,7 @@ def read_plan(path: str | os.PathLike[str]) -> Plan:
     except (OSError, ValueError) as error:
         if isinstance(error, PlanError):
             raise
-        raise PlanError(
-            f"{os.fspath(path)!r} cannot be read: {getattr(error, 'strerror', None) or error}"
-        ) from None
+        raise PlanError(f"{os.fspath(path)!r} cannot be read: {getattr(error, 'strerror', None) or error}") from None
     return parse_plan(data)
 
 
@@ -93,9 +91,7 @@ def _migrated(top: dict[str, Json]) -> dict[str, Json]:
     if isinstance(version, bool) or not isinstance(version, int) or version < 1:
         raise PlanError(f"wants a whole number from 1 to {VERSION}", field="version")
     if version > VERSION:
-        raise PlanError(
-            f"the plan is of version {version}; this program reads up to {VERSION}", field="version"
-        )
+        raise PlanError(f"the plan is of version {version}; this program reads up to {VERSION}", field="version")
     while version < VERSION:
         top = MIGRATIONS[version](top)
         version += 1
@@ -132,9 +128,7 @@ def _placed(data: Json, n: int) -> Placed:
     part_id = data["id"]
     kind = data.get("kind")
     if not isinstance(kind, str) or kind not in KINDS:
-        raise PlanError(
-            f"wants one of {', '.join(KINDS)}, got {str(kind)[:40]!r}", part=part_id, field="kind"
-        )
+        raise PlanError(f"wants one of {', '.join(KINDS)}, got {str(kind)[:40]!r}", part=part_id, field="kind")
     try:
         at = data.get("at", [0, 0])
         if not isinstance(at, list) or len(at) != 2:
@@ -228,9 +222,7 @@ def format_plan(plan: Plan) -> str:
         top["channels"] = _lines([_line(record_json(c)) for c in plan.channels], "[]")
     top["reference_ohm"] = _line(plan.reference_ohm)
     top["limits"] = _line(record_json(plan.limits))
-    top["cables"] = _lines(
-        [f"{_line(name)}: {_line(record_json(c))}" for name, c in plan.cables.items()], "{}"
-    )
+    top["cables"] = _lines([f"{_line(name)}: {_line(record_json(c))}" for name, c in plan.cables.items()], "{}")
     top["parts"] = _lines([_line(placed_json(p)) for p in plan.parts], "[]")
     top["joins"] = _lines([_line([str(a), str(b)]) for a, b in plan.joins], "[]")
     top.update({key: _line(value) for key, value in plan.extra.items()})

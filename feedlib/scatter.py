@@ -140,9 +140,7 @@ def solve_stack(matrix: ComplexArray, right: ComplexArray) -> ComplexArray:
     return np.moveaxis(found, -3, -1)
 
 
-def joined(
-    blocks: ComplexArray, inner: list[tuple[int, int]], outer: list[int]
-) -> tuple[ComplexArray, ComplexArray]:
+def joined(blocks: ComplexArray, inner: list[tuple[int, int]], outer: list[int]) -> tuple[ComplexArray, ComplexArray]:
     """The matrix that is left when ports are tied: (S of the outer ports, incident waves at the inner ports).
 
     blocks : (..., n, n, F) block-diagonal matrix of all parts at one common reference; inner : pairs of tied rows;

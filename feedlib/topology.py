@@ -121,8 +121,7 @@ class Topology:
 def shape_of(plan: Plan) -> Shape:
     """What of the parts the topology depends on."""
     return tuple(
-        (p.id, type(p.part), p.part.ports, p.part.line_count if isinstance(p.part, Lines) else 0)
-        for p in plan.parts
+        (p.id, type(p.part), p.part.ports, p.part.line_count if isinstance(p.part, Lines) else 0) for p in plan.parts
     )
 
 
@@ -230,9 +229,7 @@ class _Compiler:
                 outer.append(edge)
         assert inside
         lines = [OPEN] * len(group)
-        core = Core(
-            [elements[e] for e in group], lines, starts[:-1], tied, inner, [rows[e][0] for e in outer]
-        )
+        core = Core([elements[e] for e in group], lines, starts[:-1], tied, inner, [rows[e][0] for e in outer])
         others = [e for e in outer if e != up]
         height = 1 + max((self.height[e] for e in others), default=-1)
         self.found.append((height, BlockOp(up, others, outer.index(up), None, core)))
@@ -276,9 +273,7 @@ class _Compiler:
                     rows_of.append(OPEN if element.line is None else len(lines))
                     if element.line is not None:
                         lines.append(element)
-                ops[n] = replace(
-                    op, core=replace(op.core, lines=rows_of, inner=[number[e] for e in op.core.inner])
-                )
+                ops[n] = replace(op, core=replace(op.core, lines=rows_of, inner=[number[e] for e in op.core.inner]))
         return self._described(ops, lines, cascaded)
 
     def _described(self, ops: list[Op], lines: list[Element], cascaded: int) -> Topology:
@@ -300,9 +295,7 @@ class _Compiler:
             part_start=np.cumsum([0, *(p.part.ports for p in plan.parts)], dtype=np.intp)[:-1],
             far=self._far(ports),
             line_planes={
-                (e.part, e.line): (self._plane_of(e, 0), self._plane_of(e, 1))
-                for e in lines
-                if e.line is not None
+                (e.part, e.line): (self._plane_of(e, 0), self._plane_of(e, 1)) for e in lines if e.line is not None
             },
         )
 

@@ -111,9 +111,7 @@ def renormalise(s: ComplexArray, from_ohm: float | Array, to_ohm: float | Array)
     try:
         turned = np.linalg.solve(np.eye(ports) - transposed @ g, transposed - g)
     except np.linalg.LinAlgError:
-        raise TouchstoneError(
-            "no port may be the exact negative of its wanted reference resistance"
-        ) from None
+        raise TouchstoneError("no port may be the exact negative of its wanted reference resistance") from None
     renormalised: ComplexArray = turned.transpose(2, 1, 0) * (k[:, np.newaxis] / k)[..., np.newaxis]
     return renormalised
 
@@ -121,9 +119,7 @@ def renormalise(s: ComplexArray, from_ohm: float | Array, to_ohm: float | Array)
 def _read_version_1(lines: Sequence[Line], ports_in_name: int | None) -> NetworkData:
     options = read_options(*lines[0])
     if not ports_in_name:
-        raise Refusal(
-            options.line, "the file's name must end in .s1p, .s2p and so on, to say the number of ports"
-        )
+        raise Refusal(options.line, "the file's name must end in .s1p, .s2p and so on, to say the number of ports")
     rows = [row for row in lines[1:] if not row[1].startswith("#")]  # only the first option line counts
     if not rows:
         raise Refusal(options.line, "there are no data, only the option line")

@@ -99,9 +99,7 @@ def read_options(line: int, content: str) -> Options:
             continue
         option = next((option for option, values in _OPTIONS.items() if token in values), None)
         if option is None or option in found:
-            raise Refusal(
-                line, f"{_short(token)} must not stand here; an option line is like '# GHz S MA R 50'"
-            )
+            raise Refusal(line, f"{_short(token)} must not stand here; an option line is like '# GHz S MA R 50'")
         found[option] = token
     return Options(
         line=line,
@@ -120,9 +118,7 @@ def read_resistances(line: int, tokens: Sequence[str]) -> tuple[float, ...]:
     return resistances_ohm
 
 
-def read_data_sets(
-    rows: Sequence[Line], ports: int, *, pairs: int, unit_power: int
-) -> tuple[DataSets, Sequence[Line]]:
+def read_data_sets(rows: Sequence[Line], ports: int, *, pairs: int, unit_power: int) -> tuple[DataSets, Sequence[Line]]:
     """The data sets, a frequency and so many pairs of numbers each, and the rows of the noise block below.
 
     No pair is broken over two lines, so the lines with an odd count of numbers are those that begin a set.
@@ -147,9 +143,7 @@ def read_data_sets(
             raise Refusal(line, f"a frequency and pairs must begin the data, not {len(numbers)} numbers")
         sets.numbers.extend(numbers)
         if len(sets.numbers) > len(sets.lines) * size:
-            raise Refusal(
-                line, f"a data set must have a frequency and {size} numbers for {ports} ports, not more"
-            )
+            raise Refusal(line, f"a data set of {ports}-port data must have a frequency and {size} numbers, not more")
     _check_complete(sets, ports, size, rows[-1][0])
     return sets, ()
 
@@ -187,7 +181,7 @@ def read_sections(lines: Sequence[Line]) -> Mapping[str, Section]:
             sections[open_keyword] = Section(line, match[2].split(), [])
         elif not content.startswith("#"):
             if open_keyword not in _WITH_LINES_BELOW:
-                raise Refusal(line, f"{_short(content)} must not stand below [{open_keyword}]")
+                raise Refusal(line, f"{_short(content)} must not stand here, outside [Network Data]")
             sections[open_keyword].below.append((line, content))
     if information_line:
         raise Refusal(information_line, "[Begin Information] must be closed by [End Information]")
@@ -236,16 +230,14 @@ def _check_order(sections: Mapping[str, Section], first_line: int, last_line: in
     keywords = list(sections)
     if keywords[keywords.index("Network Data") + 1 :] not in (["End"], ["Noise Data", "End"]):
         line = sections["Network Data"].line
-        raise Refusal(
-            line, "after [Network Data] must come [End], or [Noise Data] and [End], and nothing else"
-        )
+        raise Refusal(line, "after [Network Data] must come [End], or [Noise Data] and [End], and nothing else")
 
 
 def _check_complete(sets: DataSets, ports: int, size: int, line: int) -> None:
     count = len(sets.numbers) - (len(sets.lines) - 1) * size
     if sets.lines and count < size:
         begun = f"the data set from line {sets.lines[-1]} on"
-        raise Refusal(line, f"{begun} has a frequency and {count} numbers, but {ports} ports need {size}")
+        raise Refusal(line, f"{begun} has a frequency and {count} numbers, but {ports}-port data need {size}")
 
 
 def _frequency_hz(line: int, token: str, unit_power: int) -> float:

@@ -12,9 +12,7 @@ from feedlib.touchstone import TouchstoneError
 _PAIRS_PER_LINE = 4  # at most, by the specification
 
 
-def write_touchstone(
-    frequency_hz: Array, s: ComplexArray, reference_ohm: float, comments: Sequence[str] = ()
-) -> str:
+def write_touchstone(frequency_hz: Array, s: ComplexArray, reference_ohm: float, comments: Sequence[str] = ()) -> str:
     """The text of a file in Hz, Re and Im with all digits, every port at the one reference.
 
     frequency_hz : (F,) not below zero, strictly increasing. s : (F, P, P), finite, else TouchstoneError. The
@@ -23,9 +21,7 @@ def write_touchstone(
     not_finite = np.flatnonzero(~np.isfinite(s).all(axis=(1, 2)))
     if not_finite.size:
         bad_hz = float(frequency_hz[not_finite[0]])
-        raise TouchstoneError(
-            f"S must be finite to be written to a Touchstone file, but is not at {bad_hz:.9g} Hz"
-        )
+        raise TouchstoneError(f"S must be finite to be written to a Touchstone file, but is not at {bad_hz:.9g} Hz")
     lines = [f"! {_ascii(line)}" for comment in comments for line in comment.splitlines()]
     lines.append(f"# Hz S RI R {float(reference_ohm)!r}".removesuffix(".0"))
     if s.shape[-1] == 2:

@@ -16,8 +16,7 @@ from feedlib.parts.tee import Tee
 from feedlib.parts.transformer import Transformer
 
 KINDS: dict[str, type[Part]] = {
-    kind.KIND: kind
-    for kind in (Radio, Antenna, Coax, Tee, Splitter, Lumped, Pad, Transformer, Load, Measured)
+    kind.KIND: kind for kind in (Radio, Antenna, Coax, Tee, Splitter, Lumped, Pad, Transformer, Load, Measured)
 }
 """Every kind of part by the file's word."""
 

@@ -48,9 +48,7 @@ class Coax(Lines):
         )
         if self.ends == (None, None):
             return (main,)
-        outside = [
-            e and Line(e.z0_ohm, e.length_m / (e.velocity_factor * SPEED_OF_LIGHT_M_PER_S)) for e in self.ends
-        ]
+        outside = [e and Line(e.z0_ohm, e.length_m / (e.velocity_factor * SPEED_OF_LIGHT_M_PER_S)) for e in self.ends]
         return tuple(line for line in (outside[0], main, outside[1]) if line is not None)
 
     @property

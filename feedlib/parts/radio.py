@@ -18,9 +18,7 @@ class Radio(Part):
     LABEL: ClassVar[str] = "radio"
 
     impedance_ohm: complex = field("Impedance", default=50 + 0j, unit="ohm", above=0)
-    power_w: float = field(
-        "Power", default=1.0, unit="W", above=0, hint="available power into a matched load"
-    )
+    power_w: float = field("Power", default=1.0, unit="W", above=0, hint="available power into a matched load")
 
     @property
     def ports(self) -> int:
