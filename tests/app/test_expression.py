@@ -70,6 +70,10 @@ def read_m(text: str) -> float:
         ("1 in + 1 mm", 0.0264),
         ("2 - 7/16 in", 0.0396875),
         ("62-3/2 mm", 0.0605),
+        ("62-1/2.5 mm", 0.0616),
+        ("62-1/20 mm", 0.06195),
+        ("1/2-1/4 in", 0.00635),
+        ("3''-1''", 0.0508),
         ("0", 0.0),
     ],
 )
@@ -110,6 +114,7 @@ def test_length(text: str, length_m: float) -> None:
         ("1 ft-3 in", "write 1 ft 3 in or 1 ft - 3 in."),
         ("1 ft 3", "after feet only inches can follow"),
         ("1 ft 3 mm", "after feet only inches can follow"),
+        ("2 7/16.5 in", "'.5' is not expected"),
         ("62 3/2 mm", "'62 3/2' is not a whole number and a proper fraction"),
         ("1 1/0 in", "'1 1/0' is not a whole number and a proper fraction"),
         ("9/2 1/4 in", "use parentheses"),
@@ -142,9 +147,7 @@ def test_twenty_parentheses_are_read() -> None:
 Sum = tuple[str, Fraction]
 NUMBERS: st.SearchStrategy[Sum] = st.one_of(
     st.decimals(0, 9999, places=2).map(lambda d: (str(d), Fraction(d))),
-    st.tuples(st.integers(0, 99), st.integers(1, 15)).map(
-        lambda w: (f"{w[0]} {w[1]}/16", w[0] + Fraction(w[1], 16))
-    ),
+    st.tuples(st.integers(0, 99), st.integers(1, 15)).map(lambda w: (f"{w[0]} {w[1]}/16", w[0] + Fraction(w[1], 16))),
 )
 SUMS = st.recursive(
     NUMBERS,

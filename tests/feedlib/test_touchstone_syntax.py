@@ -7,6 +7,7 @@ from __future__ import annotations
 
 import re
 import string
+from contextlib import suppress
 
 import numpy as np
 import pytest
@@ -234,12 +235,8 @@ SCRAPS = """#|# Z RI R 5|[Version] 2.0|[Network Data]|[End]|[Reference]|[Noise D
     st.lists(st.sampled_from(re.split(r"[|\n]", SCRAPS)) | st.text(string.printable, max_size=5), max_size=25),
     st.sampled_from(["\n", " ", ""]),
 )
-def test_any_text_ends_in_finite_data_or_in_a_sentence(scraps: list[str], between: str) -> None:
-    try:
+def test_any_text_ends_in_finite_data_or_in_a_refusal(scraps: list[str], between: str) -> None:
+    with suppress(TouchstoneError):
         data = read_touchstone(between.join(scraps), "x.s1p")
-    except TouchstoneError as error:
-        sentence = str(error)
-    else:
-        sentence = "x.s1p, line 0: finite" if np.isfinite(data.s).all() else ""
+        assert np.isfinite(data.s).all()
         assert (np.diff(data.frequency_hz) > 0).all()
-    assert sentence.startswith("x.s1p, line ")

@@ -39,9 +39,9 @@ def test_rows_continue_after_four_pairs(ports: int, pairs_of_a_row: list[int]) -
 
 def test_written_text() -> None:
     s = np.array([[[0.1, 0.01 + 0.02j], [0.9 - 0.1j, 1 / 3]]])
-    text = write_touchstone(np.array([868.1e6]), s, 50, comments=["two lines,\none of them the last", "A–B"])
+    text = write_touchstone(np.array([868.1e6]), s, 50, comments=["two lines,\none of them the last", "A–B\x07C"])
     assert text == (
-        "! two lines,\n! one of them the last\n! A?B\n# Hz S RI R 50\n"
+        "! two lines,\n! one of them the last\n! A?B?C\n# Hz S RI R 50\n"
         "868100000.0 0.1 0.0 0.9 -0.1 0.01 0.02 0.3333333333333333 0.0\n"
     )
     assert "# Hz S RI R 37.5\n" in write_touchstone(np.array([1.0]), s, 37.5)
