@@ -6,7 +6,7 @@ them. Arrays are read-only.
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterator, Mapping
+from collections.abc import Callable, Collection, Iterable, Iterator, Mapping
 from dataclasses import dataclass
 from functools import cached_property
 from typing import Any
@@ -14,18 +14,19 @@ from typing import Any
 import numpy as np
 
 from feedlib.conventions import Array, ComplexArray, Index
-from feedlib.flows import Flows, Network, standing_wave
-from feedlib.harness import MAX_BYTES, harness_s
+from feedlib.flows import Flows, LineValues, network_of, standing_wave
+from feedlib.harness import MAX_BYTES, bytes_of, harness_s
 from feedlib.parts import Antenna, Radio
 from feedlib.parts.base import Lines
-from feedlib.plan import Plan, Port, read_port
+from feedlib.plan import Plan
+from feedlib.topology import Topology
 
 
 class PerKey(Mapping[str, Any]):
     """A read-only mapping whose values are made when asked for."""
 
-    def __init__(self, keys: tuple[str, ...], make: Callable[[str], Any]) -> None:
-        self._keys, self._make = dict.fromkeys(keys), make
+    def __init__(self, keys: Collection[str], make: Callable[[str], Any]) -> None:
+        self._keys, self._make = keys, make
 
     def __getitem__(self, key: str) -> Any:
         if key not in self._keys:
@@ -59,7 +60,7 @@ class Figures:
     @property
     def frequency_hz(self) -> Array:
         """(F,)"""
-        return self._solved.network.frequency_hz[self._part]
+        return self._solved.frequency_hz[self._part]
 
     @property
     def antenna_ids(self) -> tuple[str, ...]:
@@ -110,22 +111,23 @@ class Figures:
     def part_loss_share(self) -> Mapping[str, Array]:
         """(F,) by part id, the radio and the antennas left out."""
         losses = self._solved.part_loss
-        return PerKey(tuple(losses), lambda key: losses[key][..., self._part])
+        return PerKey(losses, lambda key: losses[key][..., self._part])
 
     @property
     def port_impedance_ohm(self) -> Mapping[str, ComplexArray]:
         """(F,) by port: V/I from near to far; inf where I = 0, nan where the radio does not reach."""
-        return PerKey(self._solved.ports, lambda key: self._solved.impedance(read_port(key), self._part))
+        solved = self._solved
+        return PerKey(solved.port_rows, lambda key: solved.impedance(solved.port_rows[key])[..., self._part])
 
     @property
     def harness_ports(self) -> tuple[str, ...]:
         """The ports of `harness_s` (P)."""
         return self._solved.harness_ports
 
-    @cached_property
+    @property
     def harness_s(self) -> ComplexArray:
         """(F, P, P) with every antenna and the radio taken off, at the plan's reference."""
-        return _frozen(self._solved.harness_s(self._part).transpose(2, 0, 1))
+        return self._solved.harness_s[..., self._part].transpose(2, 0, 1)
 
     @property
     def isolation_db(self) -> Array:
@@ -134,11 +136,11 @@ class Figures:
 
     def voltage_v(self, port: str) -> ComplexArray:
         """(F,) voltage at a port; 0 where the radio does not reach."""
-        return self._solved.at_port(read_port(port))[0][..., self._part]
+        return self._solved.at_port(self._solved.port_rows[port])[0][..., self._part]
 
     def current_a(self, port: str) -> ComplexArray:
         """(F,) current into the part at a port."""
-        return self._solved.at_port(read_port(port))[1][..., self._part]
+        return self._solved.at_port(self._solved.port_rows[port])[1][..., self._part]
 
 
 class Answer(Figures):
@@ -146,7 +148,7 @@ class Answer(Figures):
 
     def __init__(self, solved: Solved, points: int, channels: tuple[str, ...]) -> None:
         super().__init__(solved, slice(0, points))
-        self.plan: Plan = solved.network.plan
+        self.plan: Plan = solved.plan
         self.mark = Figures(solved, slice(points, points + 1))
         start = points + 3
         self.channels: Mapping[str, Figures] = {
@@ -156,12 +158,12 @@ class Answer(Figures):
     @cached_property
     def verdicts(self) -> tuple[Verdict, ...]:
         """Every limit that the plan sets, over the grid points inside the band, its edges and every channel."""
-        solved, limits = self._solved, self.plan.limits
-        band = self.plan.band
-        f = solved.network.frequency_hz
-        points = self.frequency_hz.size
-        inside = np.flatnonzero((f[:points] >= band.start_hz) & (f[:points] <= band.stop_hz))
-        judged = np.concatenate([inside, np.arange(points + 1, f.size)])
+        solved, limits, band = self._solved, self.plan.limits, self.plan.band
+        f, points = solved.frequency_hz, self.frequency_hz.size
+        inside = (f >= band.start_hz) & (f <= band.stop_hz)
+        inside[points] = False  # the mark alone is not judged
+        inside[points + 1 :] = True
+        judged = np.flatnonzero(inside)
         found = []
         for limit, at_least in JUDGED.items():
             wanted = getattr(limits, limit)
@@ -201,70 +203,85 @@ JUDGED: dict[str, bool] = {
 class Solved:
     """Flows and the figures made of them, frequency last; the one place where figures are worked out."""
 
-    def __init__(self, network: Network, flows: Flows, radio: Radio) -> None:
-        self.network, self.flows, self.radio = network, flows, radio
-        plan, topology = network.plan, network.topology
-        self.ports = tuple(map(str, topology.port_row))
-        self.antennas = [(n, p) for n, p in enumerate(plan.parts) if isinstance(p.part, Antenna)]
-        self.antenna_ids = tuple(p.id for _, p in self.antennas)
-        self.terminals = [topology.roots[0][1], *(n for n, _ in self.antennas)]
-        self.harness_ports = tuple(f"{plan.parts[n].id}:1" for n in self.terminals)
-        rows = topology.part_start[[n for n, _ in self.antennas]]
+    def __init__(
+        self, plan: Plan, topology: Topology, values: LineValues, frequency_hz: Array, radio: Radio, flows: Flows
+    ) -> None:
+        self.plan, self.topology, self.values = plan, topology, values
+        self.frequency_hz, self.radio, self.flows = frequency_hz, radio, flows
+        self.antennas = [(n, p.id, p.part) for n, p in enumerate(plan.parts) if isinstance(p.part, Antenna)]
+        self.antenna_ids = tuple(part_id for _, part_id, _ in self.antennas)
+        rows = topology.part_start[[n for n, *_ in self.antennas]]
         self._antenna_edge: Index = topology.port_edge[rows]
         self._antenna_sign = topology.port_sign[rows][:, None]
 
     @cached_property
+    def port_rows(self) -> dict[str, int]:
+        """Where each port stands in the topology."""
+        return {f"{part}:{number}": row for (part, number), row in self.topology.port_row.items()}
+
+    @property
+    def terminals(self) -> list[int]:
+        """Part indices of the radio and the antennas."""
+        return [self.topology.roots[0][1], *(n for n, *_ in self.antennas)]
+
+    @property
+    def harness_ports(self) -> tuple[str, ...]:
+        return tuple(f"{self.plan.parts[n].id}:1" for n in self.terminals)
+
+    @cached_property
     def antenna_current_a(self) -> ComplexArray:
-        return _frozen(self.flows.i[..., self._antenna_edge, :] * self._antenna_sign)
+        at = self._antenna_edge
+        current = self.flows.scale[..., at, :] * self.flows.i[..., at, :]
+        current.view(float)[...] *= self._antenna_sign
+        return _frozen(current)
 
     @cached_property
     def antenna_voltage_v(self) -> ComplexArray:
-        return _frozen(self.flows.v[..., self._antenna_edge, :])
+        at = self._antenna_edge
+        return _frozen(self.flows.scale[..., at, :] * self.flows.v[..., at, :])
 
     @cached_property
     def antenna_share(self) -> Array:
-        v, i = self.antenna_voltage_v, self.antenna_current_a
-        return _frozen((v.real * i.real + v.imag * i.imag) / self.radio.power_w)
+        return _frozen(self._power[..., self._antenna_edge, :] * self._antenna_sign)
 
     @cached_property
-    def _reflection(self) -> Array:
-        edge = self.network.topology.roots[0][0]
-        v, i, zs = (
-            self.flows.state_v[..., edge, :],
-            self.flows.state_i[..., edge, :],
-            self.radio.impedance_ohm,
-        )
-        return np.abs((v - zs.conjugate() * i) / (v + zs * i))
+    def _power(self) -> Array:
+        """(E + 1, F) power along each edge's current over the available power: |s|^2 Re(v i*)."""
+        flows = self.flows
+        power = _real_product(flows.v, flows.i)
+        power *= _real_product(flows.scale, flows.scale)
+        power *= 1 / self.radio.power_w
+        return power
+
+    @cached_property
+    def reflected_share(self) -> Array:
+        edge = self.topology.roots[0][0]
+        v, i, zs = self.flows.v[..., edge, :], self.flows.i[..., edge, :], self.radio.impedance_ohm
+        back, ahead = v - zs.conjugate() * i, v + zs * i
+        return _frozen(_real_product(back, back) / _real_product(ahead, ahead))
 
     @cached_property
     def return_loss_db(self) -> Array:
         with np.errstate(divide="ignore"):
-            return _frozen(-20 * np.log10(self._reflection) + 0.0)
-
-    @cached_property
-    def reflected_share(self) -> Array:
-        return _frozen(self._reflection**2)
+            return _frozen(-10 * np.log10(self.reflected_share) + 0.0)
 
     @cached_property
     def amplitude_balance_db(self) -> Array:
         if not self.antennas:
-            return _frozen(np.zeros(self._reflection.shape))
-        wanted = np.array([p.part.target.amplitude for _, p in self.antennas])[:, None]  # type: ignore[attr-defined]
+            return _frozen(np.zeros(self.reflected_share.shape))
+        wanted = np.array([a.target.amplitude for *_, a in self.antennas])[:, None]
         size = np.abs(self.antenna_current_a) / wanted
+        least = size.min(axis=-2)
         with np.errstate(divide="ignore", invalid="ignore"):
-            spread = 20 * np.log10(size.max(axis=-2) / size.min(axis=-2))
-        return _frozen(np.where(size.min(axis=-2) == 0, np.inf, spread))
-
-    @cached_property
-    def phase_error_deg(self) -> Array:
-        """(N, F) arg(I) - target phase, in 0 to 360; nan where I = 0."""
-        wanted = np.array([p.part.target.phase_deg for _, p in self.antennas]).reshape(-1, 1)  # type: ignore[attr-defined]
-        current = self.antenna_current_a
-        return np.where(current == 0, np.nan, np.mod(np.degrees(np.angle(current)) - wanted, 360.0))
+            spread = 20 * np.log10(size.max(axis=-2) / least)
+        if not least.all():
+            spread[least == 0] = np.inf
+        return _frozen(spread)
 
     @cached_property
     def phase_balance_deg(self) -> Array:
-        return _frozen(smallest_arc_deg(self.phase_error_deg))
+        wanted = np.array([a.target.phase_deg for *_, a in self.antennas]).reshape(-1, 1)
+        return _frozen(smallest_arc_deg(self.antenna_current_a, wanted))
 
     @cached_property
     def harness_loss_db(self) -> Array:
@@ -274,53 +291,63 @@ class Solved:
     @cached_property
     def part_loss(self) -> dict[str, Array]:
         """(F,) by part id: what flows in less what flows out, over the available power."""
-        topology, plan = self.network.topology, self.network.plan
-        v, i = self.flows.v, self.flows.i
-        power = (v.real * i.real + v.imag * i.imag) / self.radio.power_w
-        into = power[..., topology.port_edge, :] * topology.port_sign[:, None]
+        topology = self.topology
+        into = self._power[..., topology.port_edge, :]
+        into *= topology.port_sign[:, None]
         lost = _frozen(np.add.reduceat(into, topology.part_start, axis=-2))
-        return {p.id: lost[..., n, :] for n, p in enumerate(plan.parts) if not isinstance(p.part, Radio | Antenna)}
+        return {p.id: lost[..., n, :] for n, p in enumerate(self.plan.parts) if not isinstance(p.part, Radio | Antenna)}
 
-    def at_port(self, port: Port) -> tuple[ComplexArray, ComplexArray]:
+    def at_port(self, row: int) -> tuple[ComplexArray, ComplexArray]:
         """Voltage, and current into the part, each (F,)."""
-        topology = self.network.topology
-        row = topology.port_row[port]
-        edge = topology.port_edge[row]
-        return self.flows.v[..., edge, :], self.flows.i[..., edge, :] * topology.port_sign[row]
+        edge, flows = self.topology.port_edge[row], self.flows
+        scale = flows.scale[..., edge, :]
+        return scale * flows.v[..., edge, :], scale * flows.i[..., edge, :] * self.topology.port_sign[row]
 
-    def impedance(self, port: Port, part: slice) -> ComplexArray:
-        """V/I from near to far at some of the frequencies; from the state where there is one, which no loss drowns."""
-        topology = self.network.topology
-        row = topology.port_row[port]
-        far, edge = topology.far[row], topology.port_edge[row]
-        v = self.flows.v[..., edge, part]
-        if far == 0:
-            return _frozen(np.full(v.shape, complex(np.nan, np.nan)))
-        if edge < topology.cascaded:
-            v, i = self.flows.state_v[..., edge, part], self.flows.state_i[..., edge, part]
-        else:
-            i = self.flows.i[..., edge, part] * far
+    @cached_property
+    def _edge_impedance(self) -> ComplexArray:
+        """(E + 1, F) v/i of each edge, inf where i = 0."""
+        v, i = self.flows.v, self.flows.i
         with np.errstate(divide="ignore", invalid="ignore"):
-            return _frozen(np.where(i == 0, complex(np.inf, 0), v / i))
+            z = v / i
+        if not i.all():
+            z[i == 0] = np.inf
+        return _frozen(z)
 
-    def harness_s(self, part: slice) -> ComplexArray:
-        """(P, P, F) at some of the frequencies."""
-        return harness_s(self.network.at(part), self.terminals)
+    def impedance(self, row: int) -> ComplexArray:
+        """(F,) V/I from near to far at a port."""
+        far = self.topology.far[row]
+        z = self._edge_impedance[..., self.topology.port_edge[row], :]
+        if far > 0:
+            return z
+        return _frozen(np.full(z.shape, complex(np.nan, np.nan)) if far == 0 else np.where(np.isinf(z), z, -z))
+
+    def _harness_at(self, part: slice) -> ComplexArray:
+        network = network_of(self.plan, self.topology, self.values, self.frequency_hz[part])
+        return harness_s(network, self.terminals)
+
+    @cached_property
+    def harness_s(self) -> ComplexArray:
+        """(P, P, F)"""
+        return _frozen(self._harness_at(slice(None)))
 
     @cached_property
     def isolation_db(self) -> Array:
-        """In slices of frequency, so that no harness is too large to be judged."""
-        count, total = len(self.antennas), self.network.frequency_hz.size
+        """In slices of frequency where the whole would be too large, so that every harness can be judged."""
+        count, total = len(self.antennas), self.frequency_hz.size
         if count < 2:
             return _frozen(np.full(total, np.inf))
-        step = max(1, int(MAX_BYTES / 8 / (16 * (count + 1) ** 2)))
         apart = ~np.eye(count, dtype=bool)
-        loudest = [np.abs(self.harness_s(slice(n, n + step))[1:, 1:])[apart].max(axis=0) for n in range(0, total, step)]
+        if bytes_of(count + 1, total) <= MAX_BYTES:
+            parts: Iterable[ComplexArray] = [self.harness_s]
+        else:
+            step = max(1, int(MAX_BYTES / 8 / bytes_of(count + 1, 1)))
+            parts = (self._harness_at(slice(n, n + step)) for n in range(0, total, step))
+        loudest = np.concatenate([np.abs(s[1:, 1:])[apart].max(axis=0) for s in parts])
         with np.errstate(divide="ignore"):
-            return _frozen(-20 * np.log10(np.concatenate(loudest)) + 0.0)
+            return _frozen(-20 * np.log10(loudest) + 0.0)
 
     def swell(self, part_id: str, at: int, points: int) -> tuple[Array, ComplexArray, complex] | None:
-        topology, plan = self.network.topology, self.network.plan
+        topology, plan = self.topology, self.plan
         index = next(n for n, p in enumerate(plan.parts) if p.id == part_id)
         part = plan.parts[index].part
         assert isinstance(part, Lines)
@@ -331,27 +358,53 @@ class Solved:
             return None
         cable = getattr(part, "cable", None)
         line = part.lines(None if cable is None else plan.cables[cable])[number]
-        (edge_1, sign_1), (edge_2, sign_2) = planes
-        v, i = self.flows.v[..., at], self.flows.i[..., at]
-        first = v[..., edge_1], sign_1 * i[..., edge_1]
-        second = v[..., edge_2], sign_2 * i[..., edge_2]
-        f = float(self.network.frequency_hz[at])
+        first, second = (self._at_plane(edge, sign, at) for edge, sign in planes)
+        f = float(self.frequency_hz[at])
         # The current runs from near to far; where it runs into port 1, port 1 is the entry.
         if topology.port_sign[row] == topology.far[row]:
             return standing_wave(first, (second[0], -second[1]), line, f, points)
         x, along, forward = standing_wave(second, (first[0], -first[1]), line, f, points)
         return x, along[::-1], forward
 
+    def _at_plane(self, edge: int, sign: int, at: int) -> tuple[ComplexArray, ComplexArray]:
+        """Voltage, and current into the line, at one frequency."""
+        scale = self.flows.scale[..., edge, at]
+        return scale * self.flows.v[..., edge, at], sign * scale * self.flows.i[..., edge, at]
 
-def smallest_arc_deg(angle_deg: Array) -> Array:
-    """(F,) smallest arc that holds all angles (N, F) in 0 to 360; nan are left out; 0 for fewer than two."""
-    if angle_deg.shape[-2] < 2:
-        return np.zeros((*angle_deg.shape[:-2], angle_deg.shape[-1]))
-    ordered = np.sort(angle_deg, axis=-2)  # nan last
-    first = ordered[..., :1, :]
-    ordered = np.where(np.isnan(ordered), first, ordered) if np.isnan(ordered).any() else ordered
-    # A left-out angle now repeats the first one; sorted again it opens no gap.
-    ordered = np.sort(ordered, axis=-2)
+
+def _real_product(a: ComplexArray, b: ComplexArray) -> Array:
+    """Re(a b*), by real arithmetic."""
+    product = a.view(float) * b.view(float)
+    return product[..., 0::2] + product[..., 1::2]
+
+
+def smallest_arc_deg(current: ComplexArray, wanted_deg: Array) -> Array:
+    """(F,) smallest arc that holds every arg(current) - wanted (N, F); currents of 0 are left out.
+
+    Angles are taken against the first antenna, so that the common case, all within half a turn, needs no sorting.
+    """
+    if current.shape[-2] < 2:
+        return np.zeros((*current.shape[:-2], current.shape[-1]))
+    against = current[..., :1, :].conj()
+    angle = np.degrees(np.angle(current * against)) - (wanted_deg - wanted_deg[:1])
+    if wanted_deg.any():
+        angle = np.mod(angle + 180, 360) - 180
+    arc = angle.max(axis=-2) - angle.min(axis=-2)
+    wide = arc > 180
+    if not current.all():
+        wide |= (current == 0).any(axis=-2)
+    if wide.any():
+        arc[wide] = _arc_by_gaps_deg(
+            np.where(current == 0, np.nan, np.degrees(np.angle(current)) - wanted_deg)[..., wide]
+        )
+    return arc
+
+
+def _arc_by_gaps_deg(angle_deg: Array) -> Array:
+    """(F,) a turn less the largest gap between neighbouring angles (N, F); nan are left out; 0 for none."""
+    ordered = np.sort(np.mod(angle_deg, 360), axis=-2)  # nan last
+    # A left-out angle repeats the smallest one, and sorted again it opens no gap.
+    ordered = np.sort(np.where(np.isnan(ordered), ordered[..., :1, :], ordered), axis=-2)
     gaps = np.diff(ordered, axis=-2, append=ordered[..., :1, :] + 360.0)
     return np.nan_to_num(360.0 - gaps.max(axis=-2))
 

@@ -12,8 +12,9 @@ import numpy as np
 
 from feedlib.conventions import ComplexArray
 from feedlib.errors import SolveError
-from feedlib.flows import Network, State, beside, end_states, look_up, through_lines
-from feedlib.topology import BlockOp, ChainOp, JoinBatch, LineBatch, Rows
+from feedlib.flows import Looks, Network, beside, end_states, look_away, through_lines
+from feedlib.parts.base import State
+from feedlib.topology import BlockOp, ChainOp, JoinBatch, LineBatch, Op, Rows
 
 MAX_BYTES = 2e9
 
@@ -23,71 +24,80 @@ def harness_s(network: Network, terminals: Sequence[int]) -> ComplexArray:
 
     SolveError when the array would take more than 2 GB. A terminal tied to nothing has S_kk = 1.
     """
-    topology = network.topology
-    batch, frequencies = network.table.k.shape[:-2], network.frequency_hz.size
-    size = float(np.prod(batch, initial=1.0)) * frequencies * len(terminals) ** 2 * 16
+    batch, frequencies = network.shape
+    size = bytes_of(len(terminals), frequencies) * float(np.prod(batch, initial=1.0))
     if size > MAX_BYTES:
         raise SolveError(
             f"the harness's S-parameters would take {size / 1e9:.1f} GB; ask for fewer frequencies or antennas"
         )
-    return _Assembly(network, terminals).matrix() if topology.roots else np.ones((0, 0, frequencies), complex)
+    return _Assembly(network, terminals).matrix()
+
+
+def bytes_of(ports: int, frequencies: int) -> float:
+    """Size of S with so many ports."""
+    return 16.0 * ports**2 * frequencies
 
 
 class _Assembly:
-    """Collects, edge by edge, which terminals hang below and how their waves get there."""
+    """Collects, edge by edge, which terminals hang below and how their waves get there.
+
+    below : per edge, the terminals below it; ways (2, n, F): how a driven edge reaches each of them, and how each of
+    them, driven, reaches the edge; and the factor of the two-ports passed since, the same both ways, or None.
+    turns : from one edge of a join or block to another, the scale's factor.
+    """
 
     def __init__(self, network: Network, terminals: Sequence[int]) -> None:
         self.network, self.topology = network, network.topology
         self.place = {part: n for n, part in enumerate(terminals)}
         self.reference = network.plan.reference_ohm
-        self.s = np.zeros(
-            (*network.table.k.shape[:-2], len(terminals), len(terminals), network.frequency_hz.size), complex
-        )
-        ends_v, ends_i = end_states(network)
-        for row, part in enumerate(self.topology.ends):
-            if part in self.place:
-                ends_v[row], ends_i[row] = self.reference, 1
-        self.away_v, self.away_i, self.scales, self.responses = look_up(network, (ends_v, ends_i))
-        self.back_v, self.back_i = np.ones_like(self.away_v), np.zeros_like(self.away_v)
-        # Per edge: the terminals below, how a driven edge reaches them (down), how they reach the edge (up).
-        self.below: dict[int, tuple[list[int], ComplexArray, ComplexArray]] = {}
+        batch, frequencies = network.shape
+        self.s = np.empty((*batch, len(terminals), len(terminals), frequencies), complex)
+        if len(self.topology.roots) > 1:
+            self.s[:] = 0
+        self.away = look_away(network, end_states(network, self.place, self.reference))
+        self.back_v, self.back_i = np.empty_like(self.away.v), np.empty_like(self.away.v)
+        self.below: dict[int, tuple[list[int], ComplexArray, ComplexArray | None]] = {}
         self.turns: dict[tuple[int, int], ComplexArray] = {}
 
     def matrix(self) -> ComplexArray:
-        self._look_down()
-        for row, part in enumerate(self.topology.ends):
-            if part in self.place:
-                self._own(part, self.back_v[..., row, :], self.back_i[..., row, :], row)
+        self._look_back()
+        self._start()
         for op in self.topology.ops:
             self._gather(op)
         for edge, part in self.topology.roots:
-            v, i = self.away_v[..., edge, :], self.away_i[..., edge, :]
+            v, i = self.away.v[..., edge, :], self.away.i[..., edge, :]
             drive = 1 / (v + self.reference * i)
             row = self.place[part]
             self.s[..., row, row, :] = (v - self.reference * i) * drive
             if edge in self.below:
-                terminals, down, up = self.below[edge]
-                self.s[..., terminals, row, :] = down * drive[..., None, :]
-                self.s[..., row, terminals, :] = 2 * self.reference * up
+                terminals, ways, factor = self.below[edge]
+                if factor is not None:
+                    ways = ways * factor[..., None, None, :]
+                self.s[..., terminals, row, :] = ways[..., 0, :, :] * drive[..., None, :]
+                self.s[..., row, terminals, :] = 2 * self.reference * ways[..., 1, :, :]
         return self.s
 
-    def _own(self, part: int, v: ComplexArray, i: ComplexArray, edge: int) -> None:
-        """A terminal's own reflection, and the start of its ways: V = 2 S_jk at a matched end, 1 V behind the source."""
-        drive = 1 / (v + self.reference * i)
-        row = self.place[part]
-        self.s[..., row, row, :] = (v - self.reference * i) * drive
-        down = np.full_like(drive, 2 * self.reference)
-        self.below[edge] = ([row], down[..., None, :], drive[..., None, :])
+    def _start(self) -> None:
+        """Each terminal's own reflection, and its ways: S_jk = 2 V_j at a matched end, with 1 V behind the source."""
+        edges = [edge for edge, part in enumerate(self.topology.ends) if part in self.place]
+        rows = [self.place[self.topology.ends[edge]] for edge in edges]
+        v, i = self.back_v[..., edges, :], self.reference * self.back_i[..., edges, :]
+        drive = 1 / (v + i)
+        self.s[..., rows, rows, :] = (v - i) * drive
+        ways = np.empty((*v.shape[:-2], 2, *v.shape[-2:]), complex)
+        ways[..., 0, :, :] = 2 * self.reference
+        ways[..., 1, :, :] = drive
+        for n, (edge, row) in enumerate(zip(edges, rows, strict=True)):
+            self.below[edge] = [row], ways[..., n : n + 1, :], None
 
-    def _look_down(self) -> None:
+    def _look_back(self) -> None:
         """States of all edges towards the root, with the reference at the roots."""
-        network, table, away = self.network, self.network.table, (self.away_v, self.away_i)
+        network, away = self.network, self.away
         for edge, _ in self.topology.roots:
             self.back_v[..., edge, :], self.back_i[..., edge, :] = self.reference, 1
         for op in reversed(self.topology.ops):
             if isinstance(op, LineBatch):
-                z0, q = table.z0_ohm[..., op.rows, :], table.q[..., op.rows, :]
-                self._set_back(op.down, through_lines(*self._back(op.up), z0, q))
+                self._set_back(op.down, through_lines(self._back(op.up), *network.table.rows(op.rows)))
             elif isinstance(op, JoinBatch):
                 first, second = _at(away, op.first), _at(away, op.second)
                 above = self._back(op.up)
@@ -104,67 +114,81 @@ class _Assembly:
         """Looking into a join from one of its lower edges: upwards and at the other side by side."""
         v, i, scale = beside(above, beside_it, rescale)
         self._set_back(at, (v, i))
-        factor: ComplexArray | float = 1.0 if scale is None else scale
-        to_up, to_other = beside_it[0] * factor, above[0] * factor
-        lower, upper, others = _numbers(at), range(up.start, up.stop), _numbers(other)
-        for n, (edge, top, side) in enumerate(zip(lower, upper, others, strict=True)):
+        to_up, to_other = beside_it[0], above[0]
+        if scale is not None:
+            to_up, to_other = to_up * scale, to_other * scale
+        for n, (edge, top, side) in enumerate(
+            zip(_numbers(at), range(up.start, up.stop), _numbers(other), strict=True)
+        ):
             self.turns[edge, top] = to_up[..., n, :]
             self.turns[edge, side] = to_other[..., n, :]
 
     def _turn_block(self, op: BlockOp) -> None:
         """Looking into a block from each of its lower edges."""
         edges = [*op.down[: op.port], op.up, *op.down[op.port :]]
-        v, i = self.away_v[..., edges, :], self.away_i[..., edges, :]
+        v, i = self.away.v[..., edges, :], self.away.i[..., edges, :]
         v[..., op.port, :], i[..., op.port, :] = self._back(op.up)
         for n, edge in enumerate(edges):
             if edge == op.up:
                 continue
             rest = [m for m in range(len(edges)) if m != n]
-            response = self.network.blocks.scatter[op.up].look(n, v[..., rest, :], i[..., rest, :])
+            response = self.network.scatter[op.up].look(n, v[..., rest, :], i[..., rest, :])
             self._set_back(edge, (response.v, response.i))
             for m, k in zip(rest, np.moveaxis(response.k, -2, 0), strict=True):
                 self.turns[edge, edges[m]] = k
 
-    def _gather(self, op: LineBatch | JoinBatch | ChainOp | BlockOp) -> None:
+    def _gather(self, op: Op) -> None:
         """Carry the ways below an operation to its upper edge, and fill S where two of them meet."""
         if isinstance(op, LineBatch):
             k = self.network.table.k[..., op.rows, :]
             for n, (up, down) in enumerate(zip(range(op.up.start, op.up.stop), _numbers(op.down), strict=True)):
-                self._carry(up, [down], [k[..., n, :]], [k[..., n, :]])
+                self._along(up, down, k[..., n, :])
         elif isinstance(op, ChainOp):
-            along = np.broadcast_to(self.network.chains[op.up].k, self.network.frequency_hz.shape)
-            self._carry(op.up, [op.down], [along], [along])
+            k = np.broadcast_to(np.asarray(self.network.chains[op.up].k), self.network.frequency_hz.shape)
+            self._along(op.up, op.down, k)
         elif isinstance(op, JoinBatch):
-            scale = self.scales.get(op.up.start)
+            scale = self.away.scales.get(op.up.start)
             pairs = zip(range(op.up.start, op.up.stop), _numbers(op.first), _numbers(op.second), strict=True)
             for n, (up, first, second) in enumerate(pairs):
-                down = [self.away_v[..., second, :], self.away_v[..., first, :]]
+                down = [self.away.v[..., second, :], self.away.v[..., first, :]]
                 if scale is not None:
                     down = [d * scale[..., n, :] for d in down]
-                self._carry(up, [first, second], down, [self.turns[first, up], self.turns[second, up]])
+                self._meet(up, [first, second], down)
         else:
-            k = self.responses[op.up].k
-            down = [k[..., n, :] for n in range(len(op.down))]
-            self._carry(op.up, op.down, down, [self.turns[d, op.up] for d in op.down])
+            k = self.away.responses[op.up].k
+            self._meet(op.up, op.down, [k[..., n, :] for n in range(len(op.down))])
 
-    def _carry(self, up: int, edges: list[int], down: list[ComplexArray], upwards: list[ComplexArray]) -> None:
-        found = [
-            (edge, *self.below[edge], d, u)
-            for edge, d, u in zip(edges, down, upwards, strict=True)
-            if edge in self.below
-        ]
-        for source, from_rows, _, up_ways, _, _ in found:
-            for goal, to_rows, down_ways, *_ in found:
+    def _along(self, up: int, down: int, k: ComplexArray) -> None:
+        """A reciprocal two-port: the same factor both ways."""
+        found = self.below.pop(down, None)
+        if found is not None:
+            rows, ways, factor = found
+            self.below[up] = rows, ways, k if factor is None else factor * k
+
+    def _meet(self, up: int, edges: list[int], down: list[ComplexArray]) -> None:
+        """Terminals below several edges of a join or block: S between them, and their ways on to its upper edge."""
+        found = []
+        for edge, d in zip(edges, down, strict=True):
+            if edge in self.below:
+                rows, ways, factor = self.below.pop(edge)
+                found.append((edge, rows, ways if factor is None else ways * factor[..., None, None, :], d))
+        if not found:
+            return
+        for source, from_rows, from_ways, _ in found:
+            for goal, to_rows, to_ways, _ in found:
                 if source != goal:
-                    across = up_ways * self.turns[source, goal][..., None, :]
-                    block = down_ways[..., :, None, :] * across[..., None, :, :]
-                    self.s[..., np.array(to_rows)[:, None], np.array(from_rows)[None, :], :] = block
-        if found:
-            self.below[up] = (
-                [row for _, rows, *_ in found for row in rows],
-                np.concatenate([ways * d[..., None, :] for _, _, ways, _, d, _ in found], axis=-2),
-                np.concatenate([ways * u[..., None, :] for _, _, _, ways, _, u in found], axis=-2),
-            )
+                    across = from_ways[..., 1, :, :] * self.turns[source, goal][..., None, :]
+                    met = to_ways[..., 0, :, None, :] * across[..., None, :, :]
+                    self.s[..., np.array(to_rows)[:, None], from_rows, :] = met
+        rows = [row for _, some, *_ in found for row in some]
+        gathered = np.empty((*self.s.shape[:-3], 2, len(rows), self.s.shape[-1]), complex)
+        at = 0
+        for edge, some, ways, d in found:
+            span = slice(at, at + len(some))
+            np.multiply(ways[..., 0, :, :], d[..., None, :], out=gathered[..., 0, span, :])
+            np.multiply(ways[..., 1, :, :], self.turns[edge, up][..., None, :], out=gathered[..., 1, span, :])
+            at = span.stop
+        self.below[up] = rows, gathered, None
 
     def _back(self, edges: Rows | int) -> State:
         return self.back_v[..., edges, :], self.back_i[..., edges, :]
@@ -173,9 +197,9 @@ class _Assembly:
         self.back_v[..., edges, :], self.back_i[..., edges, :] = state
 
 
-def _at(state: State, edges: Rows) -> State:
-    return state[0][..., edges, :], state[1][..., edges, :]
+def _at(looks: Looks, edges: Rows) -> State:
+    return looks.v[..., edges, :], looks.i[..., edges, :]
 
 
 def _numbers(rows: Rows) -> list[int]:
-    return list(range(rows.start, rows.stop)) if isinstance(rows, slice) else rows.tolist()
+    return list(range(rows.start, rows.stop)) if isinstance(rows, slice) else [int(n) for n in rows]

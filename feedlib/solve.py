@@ -5,8 +5,9 @@ from __future__ import annotations
 import numpy as np
 
 from feedlib.answer import Answer, Solved
+from feedlib.conventions import Array
 from feedlib.errors import SolveError
-from feedlib.flows import drive, line_values, network_of
+from feedlib.flows import drive_in_slices, line_values
 from feedlib.parts import Radio
 from feedlib.plan import Plan
 from feedlib.topology import Topology, compile_plan
@@ -19,14 +20,19 @@ def solve(plan: Plan, topology: Topology | None = None) -> Answer:
     topology : that of an earlier plan, used again when it still fits.
     """
     radio = _only_radio(plan)
-    frequency_hz = _frequencies(plan)
+    grid_hz = plan.grid_hz()
+    band = plan.band
+    rest_hz = [band.marked_hz, band.start_hz, band.stop_hz, *(c.hz for c in plan.channels)]
+    frequency_hz = np.concatenate([grid_hz, rest_hz])
     _refuse_uncovered(plan, frequency_hz)
-    refuse_undetermined(plan)
     if topology is None or not topology.fits(plan):
         topology = compile_plan(plan)
-    network = network_of(plan, topology, line_values(plan, topology), frequency_hz)
-    solved = Solved(network, drive(network, radio), radio)
-    return Answer(solved, plan.grid_hz().size, tuple(c.name for c in plan.channels))
+    if topology.has_loops:
+        refuse_undetermined(plan)
+    values = line_values(plan, topology)
+    flows = drive_in_slices(plan, topology, values, frequency_hz, radio)
+    solved = Solved(plan, topology, values, frequency_hz, radio, flows)
+    return Answer(solved, grid_hz.size, tuple(c.name for c in plan.channels))
 
 
 def _only_radio(plan: Plan) -> Radio:
@@ -39,18 +45,13 @@ def _only_radio(plan: Plan) -> Radio:
     return radios[0].part
 
 
-def _frequencies(plan: Plan) -> np.ndarray[tuple[int], np.dtype[np.float64]]:
-    """The grid, then the mark, the band's edges and the channels."""
-    band = plan.band
-    rest = [band.marked_hz, band.start_hz, band.stop_hz, *(c.hz for c in plan.channels)]
-    return np.concatenate([plan.grid_hz(), rest])
-
-
-def _refuse_uncovered(plan: Plan, frequency_hz: np.ndarray[tuple[int], np.dtype[np.float64]]) -> None:
-    low, high = float(frequency_hz.min()), float(frequency_hz.max())
+def _refuse_uncovered(plan: Plan, frequency_hz: Array) -> None:
     for placed in plan.parts:
         covers = placed.part.covers_hz()
-        if covers is not None and not (covers[0] <= low and high <= covers[1]):
+        if covers is None:
+            continue
+        low, high = float(frequency_hz.min()), float(frequency_hz.max())
+        if not (covers[0] <= low and high <= covers[1]):
             raise SolveError(
                 f"its data covers {covers[0] / 1e6:.12g} to {covers[1] / 1e6:.12g} MHz, "
                 f"the plan asks for {low / 1e6:.12g} to {high / 1e6:.12g} MHz",

@@ -113,6 +113,11 @@ class Topology:
     far: Index
     line_planes: dict[tuple[int, int], tuple[tuple[int, int], tuple[int, int]]]
 
+    @property
+    def has_loops(self) -> bool:
+        """Whether any parts are tied together in a loop."""
+        return self.edges > self.cascaded
+
     def fits(self, plan: Plan) -> bool:
         """Whether the plan has this very topology, so that only values differ."""
         return (plan.joins is self.joins or plan.joins == self.joins) and shape_of(plan) == self.shape
@@ -171,14 +176,14 @@ class _Compiler:
         for group in reversed(blocks_of(self.graph, piece)[1:]):
             up = piece.up[group[0]]
             self.into[up] = group[0]
-            if any(edge in piece.loops for edge in self.graph.elements[group[0]].edges):
+            if piece.loops and not piece.loops.isdisjoint(self.graph.elements[group[0]].edges):
                 self._core(group, up)
             else:
                 self._single(self.graph.elements[group[0]], up)
 
     def _single(self, element: Element, up: int) -> None:
         others = [edge for edge in element.edges if edge != up]
-        height = 1 + max((self.height[e] for e in others), default=-1)
+        height = 1 + max([self.height[e] for e in others], default=-1)
         part = None if element.part == OPEN else self.plan.parts[element.part].part
         if not others:
             self.ends.append((up, element.part))
@@ -277,9 +282,9 @@ class _Compiler:
         return self._described(ops, lines, cascaded)
 
     def _described(self, ops: list[Op], lines: list[Element], cascaded: int) -> Topology:
-        number, plan, graph = self.number, self.plan, self.graph
-        ports = [port for placed in plan.parts for port in placed.ports()]
-        ends = [self._plane(*graph.at_port[port]) for port in ports]
+        number, plan, at_port = self.number, self.plan, self.graph.at_port
+        planes = [self._plane(*at) for at in at_port.values()]
+        counts = [p.part.ports for p in plan.parts]
         return Topology(
             shape=shape_of(plan),
             joins=plan.joins,
@@ -289,11 +294,11 @@ class _Compiler:
             roots=[(number[edge], part) for edge, part in self.roots],
             cascaded=cascaded,
             edges=len(number),
-            port_row={port: n for n, port in enumerate(ports)},
-            port_edge=np.array([edge for edge, _ in ends], np.intp),
-            port_sign=np.array([sign for _, sign in ends], np.intp),
-            part_start=np.cumsum([0, *(p.part.ports for p in plan.parts)], dtype=np.intp)[:-1],
-            far=self._far(ports),
+            port_row={port: n for n, port in enumerate(at_port)},
+            port_edge=np.array([edge for edge, _ in planes], np.intp),
+            port_sign=np.array([sign for _, sign in planes], np.intp),
+            part_start=np.cumsum([0, *counts], dtype=np.intp)[:-1],
+            far=self._far(planes),
             line_planes={
                 (e.part, e.line): (self._plane_of(e, 0), self._plane_of(e, 1)) for e in lines if e.line is not None
             },
@@ -313,20 +318,21 @@ class _Compiler:
         edge = element.edges[terminal]
         return self.number[edge], 1 if self.graph.elements[self.into[edge]] is element else -1
 
-    def _far(self, ports: list[Port]) -> Index:
-        """Tree edges run from near to far as they are; inside cores the count of joins decides."""
-        far = np.zeros(len(ports), np.intp)
-        row = {port: n for n, port in enumerate(ports)}
-        radio = next((p.id for p in self.plan.parts if isinstance(p.part, Radio)), None)
-        away = joins_away(self.plan, radio) if radio is not None else {}
-        for port, (element, terminal) in self.graph.at_port.items():
-            if self.graph.elements[element].edges[terminal] in self.reached:
-                far[row[port]] = 1
+    def _far(self, planes: list[tuple[int, int]]) -> Index:
+        """Tree edges run from near to far as they are; inside loops the count of joins decides."""
+        reached = {self.number[edge] for edge in self.reached}
+        far = np.array([edge in reached for edge, _ in planes], np.intp)
+        inner = {
+            self.number[edge] for _, op in self.found if isinstance(op, BlockOp) and op.core for edge in op.core.inner
+        }
+        if not inner or not self.reached:
+            return far
+        row = {port: n for n, port in enumerate(self.graph.at_port)}
+        away = joins_away(self.plan, self.plan.parts[self.roots[0][1]].id)
         for a, b in self.plan.joins:
-            if far[row[a]]:
+            if far[row[a]] and planes[row[a]][0] in inner:
                 near = b if away[b.part] < away[a.part] else a
-                _, sign = self._plane(*self.graph.at_port[near])
-                far[row[a]] = far[row[b]] = -sign
+                far[row[a]] = far[row[b]] = -planes[row[near]][1]
         return far
 
     def _take(self, edges: list[int]) -> slice:

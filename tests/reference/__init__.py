@@ -1,0 +1,1 @@
+"""Published numbers, each set as a plan and seen through the solver."""
