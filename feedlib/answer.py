@@ -6,38 +6,21 @@ them. Arrays are read-only.
 
 from __future__ import annotations
 
-from collections.abc import Callable, Collection, Iterable, Iterator, Mapping
+from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 from functools import cached_property
+from types import MappingProxyType
 from typing import Any
 
 import numpy as np
 
 from feedlib.conventions import Array, ComplexArray, Index
-from feedlib.flows import Flows, LineValues, network_of, standing_wave
+from feedlib.flows import Flows, LineValues, Network, network_of, standing_wave
 from feedlib.harness import MAX_BYTES, bytes_of, harness_s
 from feedlib.parts import Antenna, Radio
 from feedlib.parts.base import Lines
 from feedlib.plan import Plan
 from feedlib.topology import Topology
-
-
-class PerKey(Mapping[str, Any]):
-    """A read-only mapping whose values are made when asked for."""
-
-    def __init__(self, keys: Collection[str], make: Callable[[str], Any]) -> None:
-        self._keys, self._make = keys, make
-
-    def __getitem__(self, key: str) -> Any:
-        if key not in self._keys:
-            raise KeyError(key)
-        return self._make(key)
-
-    def __iter__(self) -> Iterator[str]:
-        return iter(self._keys)
-
-    def __len__(self) -> int:
-        return len(self._keys)
 
 
 @dataclass(frozen=True, slots=True)
@@ -107,17 +90,15 @@ class Figures:
         """(F,) -10 log10(sum delivered / (available - reflected))."""
         return self._solved.harness_loss_db[..., self._part]
 
-    @property
+    @cached_property
     def part_loss_share(self) -> Mapping[str, Array]:
         """(F,) by part id, the radio and the antennas left out."""
-        losses = self._solved.part_loss
-        return PerKey(losses, lambda key: losses[key][..., self._part])
+        return MappingProxyType({key: lost[..., self._part] for key, lost in self._solved.part_loss.items()})
 
-    @property
+    @cached_property
     def port_impedance_ohm(self) -> Mapping[str, ComplexArray]:
         """(F,) by port: V/I from near to far; inf where I = 0, nan where the radio does not reach."""
-        solved = self._solved
-        return PerKey(solved.port_rows, lambda key: solved.impedance(solved.port_rows[key])[..., self._part])
+        return MappingProxyType({key: z[..., self._part] for key, z in self._solved.port_impedance.items()})
 
     @property
     def harness_ports(self) -> tuple[str, ...]:
@@ -204,10 +185,17 @@ class Solved:
     """Flows and the figures made of them, frequency last; the one place where figures are worked out."""
 
     def __init__(
-        self, plan: Plan, topology: Topology, values: LineValues, frequency_hz: Array, radio: Radio, flows: Flows
+        self,
+        plan: Plan,
+        topology: Topology,
+        values: LineValues,
+        frequency_hz: Array,
+        radio: Radio,
+        flows: Flows,
+        network: Network | None,
     ) -> None:
         self.plan, self.topology, self.values = plan, topology, values
-        self.frequency_hz, self.radio, self.flows = frequency_hz, radio, flows
+        self.frequency_hz, self.radio, self.flows, self._network = frequency_hz, radio, flows, network
         self.antennas = [(n, p.id, p.part) for n, p in enumerate(plan.parts) if isinstance(p.part, Antenna)]
         self.antenna_ids = tuple(part_id for _, part_id, _ in self.antennas)
         rows = topology.part_start[[n for n, *_ in self.antennas]]
@@ -270,10 +258,10 @@ class Solved:
         if not self.antennas:
             return _frozen(np.zeros(self.reflected_share.shape))
         wanted = np.array([a.target.amplitude for *_, a in self.antennas])[:, None]
-        size = np.abs(self.antenna_current_a) / wanted
+        size = _real_product(self.antenna_current_a, self.antenna_current_a) / wanted**2
         least = size.min(axis=-2)
         with np.errstate(divide="ignore", invalid="ignore"):
-            spread = 20 * np.log10(size.max(axis=-2) / least)
+            spread = 10 * np.log10(size.max(axis=-2) / least)
         if not least.all():
             spread[least == 0] = np.inf
         return _frozen(spread)
@@ -291,10 +279,10 @@ class Solved:
     @cached_property
     def part_loss(self) -> dict[str, Array]:
         """(F,) by part id: what flows in less what flows out, over the available power."""
-        topology = self.topology
-        into = self._power[..., topology.port_edge, :]
-        into *= topology.port_sign[:, None]
-        lost = _frozen(np.add.reduceat(into, topology.part_start, axis=-2))
+        lost = np.zeros((*self._power.shape[:-2], len(self.plan.parts), self.frequency_hz.size))
+        for parts, edges, signs in self.topology.nth_ports:
+            lost[..., parts, :] += self._power[..., edges, :] * signs
+        _frozen(lost)
         return {p.id: lost[..., n, :] for n, p in enumerate(self.plan.parts) if not isinstance(p.part, Radio | Antenna)}
 
     def at_port(self, row: int) -> tuple[ComplexArray, ComplexArray]:
@@ -304,31 +292,30 @@ class Solved:
         return scale * flows.v[..., edge, :], scale * flows.i[..., edge, :] * self.topology.port_sign[row]
 
     @cached_property
-    def _edge_impedance(self) -> ComplexArray:
-        """(E + 1, F) v/i of each edge, inf where i = 0."""
-        v, i = self.flows.v, self.flows.i
+    def port_impedance(self) -> dict[str, ComplexArray]:
+        """(F,) by port: V/I from near to far."""
+        v, i, far = self.flows.v, self.flows.i, self.topology.far.tolist()
         with np.errstate(divide="ignore", invalid="ignore"):
             z = v / i
         if not i.all():
             z[i == 0] = np.inf
-        return _frozen(z)
+        _frozen(z)
+        found = {port: z[..., edge, :] for port, edge in zip(self.port_rows, self.topology.port_edge, strict=True)}
+        for (port, row), way in zip(self.port_rows.items(), far, strict=True):
+            if way == 0:
+                found[port] = _frozen(np.full(found[port].shape, complex(np.nan, np.nan)))
+            elif way < 0:
+                against = z[..., self.topology.port_edge[row], :]
+                found[port] = _frozen(np.where(np.isinf(against), against, -against))
+        return found
 
-    def impedance(self, row: int) -> ComplexArray:
-        """(F,) V/I from near to far at a port."""
-        far = self.topology.far[row]
-        z = self._edge_impedance[..., self.topology.port_edge[row], :]
-        if far > 0:
-            return z
-        return _frozen(np.full(z.shape, complex(np.nan, np.nan)) if far == 0 else np.where(np.isinf(z), z, -z))
-
-    def _harness_at(self, part: slice) -> ComplexArray:
-        network = network_of(self.plan, self.topology, self.values, self.frequency_hz[part])
-        return harness_s(network, self.terminals)
+    def _network_at(self, part: slice) -> Network:
+        return network_of(self.plan, self.topology, self.values, self.frequency_hz[part])
 
     @cached_property
     def harness_s(self) -> ComplexArray:
         """(P, P, F)"""
-        return _frozen(self._harness_at(slice(None)))
+        return _frozen(harness_s(self._network or self._network_at(slice(None)), self.terminals))
 
     @cached_property
     def isolation_db(self) -> Array:
@@ -341,7 +328,7 @@ class Solved:
             parts: Iterable[ComplexArray] = [self.harness_s]
         else:
             step = max(1, int(MAX_BYTES / 8 / bytes_of(count + 1, 1)))
-            parts = (self._harness_at(slice(n, n + step)) for n in range(0, total, step))
+            parts = (harness_s(self._network_at(slice(n, n + step)), self.terminals) for n in range(0, total, step))
         loudest = np.concatenate([np.abs(s[1:, 1:])[apart].max(axis=0) for s in parts])
         with np.errstate(divide="ignore"):
             return _frozen(-20 * np.log10(loudest) + 0.0)

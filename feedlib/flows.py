@@ -22,6 +22,10 @@ from feedlib.scatter import Dense, Response, Scatter, Undetermined, joined, reno
 from feedlib.topology import BlockOp, ChainOp, Core, JoinBatch, LineBatch, Rows, Topology
 from feedlib.undetermined import refuse_undetermined
 
+# glibc hands freed memory back to the system, page by page, until it has once freed a block as large as this; after
+# that an answer's arrays come from warm memory, which takes a quarter off the time of a small harness.
+np.empty(24 << 20, np.uint8)
+
 
 @dataclass(frozen=True, slots=True)
 class LineValues:
@@ -331,16 +335,19 @@ SLICE_BYTES = 2e6
 """Frequencies are taken in slices, so that one array of a large harness stays in the processor's cache."""
 
 
-def drive_in_slices(plan: Plan, topology: Topology, values: LineValues, frequency_hz: Array, radio: Radio) -> Flows:
-    """The flows at all frequencies."""
+def drive_in_slices(
+    plan: Plan, topology: Topology, values: LineValues, frequency_hz: Array, radio: Radio
+) -> tuple[Flows, Network | None]:
+    """The flows at all frequencies, and the network where one slice held them all."""
     step = max(16, int(SLICE_BYTES / (16 * (topology.edges + 1))))
+    if step >= frequency_hz.size:
+        network = network_of(plan, topology, values, frequency_hz)
+        return drive(network, radio), network
     found = [
         drive(network_of(plan, topology, values, frequency_hz[n : n + step]), radio)
         for n in range(0, frequency_hz.size, step)
     ]
-    if len(found) == 1:
-        return found[0]
-    return Flows(*(np.concatenate([getattr(f, name) for f in found], axis=-1) for name in ("v", "i", "scale")))
+    return Flows(*(np.concatenate([getattr(f, name) for f in found], axis=-1) for name in ("v", "i", "scale"))), None
 
 
 def standing_wave(

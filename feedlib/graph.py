@@ -6,6 +6,7 @@ Knows nothing of values or of what elements do.
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import NamedTuple
 
 from feedlib.parts.base import Lines
 from feedlib.plan import Plan, Port
@@ -14,8 +15,7 @@ OPEN = -1
 """Stands for the part index of an open circuit."""
 
 
-@dataclass(frozen=True, slots=True)
-class Element:
+class Element(NamedTuple):
     """One thing with terminals: the edge at each. part : index in the plan, or OPEN; line : which of its lines."""
 
     part: int
@@ -60,19 +60,21 @@ def graph_of(plan: Plan) -> Graph:
     ends: list[tuple[int, int]] = []
     at_port: dict[Port, tuple[int, int]] = {}
     for index, placed in enumerate(plan.parts):
-        first, part = len(elements), placed.part
+        first, part, part_id = len(elements), placed.part, placed.id
         if not isinstance(part, Lines):
-            elements.append(Element(index, None, [OPEN] * part.ports))
-            at_port.update((port, (first, n)) for n, port in enumerate(placed.ports()))
+            count = part.ports
+            elements.append(Element(index, None, [OPEN] * count))
+            for n in range(count):
+                at_port[Port(part_id, n + 1)] = first, n
             continue
-        last = first + part.line_count - 1
-        for n in range(part.line_count):
+        count = part.line_count
+        for n in range(count):
             elements.append(Element(index, n, [OPEN, OPEN]))
-        for inside in range(first, last):
+        for inside in range(first, first + count - 1):
             elements[inside].edges[1] = elements[inside + 1].edges[0] = len(ends)
             ends.append((inside, inside + 1))
-        at_port[Port(placed.id, 1)] = (first, 0)
-        at_port[Port(placed.id, 2)] = (last, 1)
+        at_port[Port(part_id, 1)] = first, 0
+        at_port[Port(part_id, 2)] = first + count - 1, 1
     for join in plan.joins:
         (a, terminal_a), (b, terminal_b) = at_port[join[0]], at_port[join[1]]
         elements[a].edges[terminal_a] = elements[b].edges[terminal_b] = len(ends)

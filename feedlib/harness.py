@@ -14,7 +14,7 @@ from feedlib.conventions import ComplexArray
 from feedlib.errors import SolveError
 from feedlib.flows import Looks, Network, beside, end_states, look_away, through_lines
 from feedlib.parts.base import State
-from feedlib.topology import BlockOp, ChainOp, JoinBatch, LineBatch, Op, Rows
+from feedlib.topology import BlockOp, ChainOp, JoinBatch, LineBatch, Op, Rows, run
 
 MAX_BYTES = 2e9
 
@@ -179,7 +179,7 @@ class _Assembly:
                 if source != goal:
                     across = from_ways[..., 1, :, :] * self.turns[source, goal][..., None, :]
                     met = to_ways[..., 0, :, None, :] * across[..., None, :, :]
-                    self.s[..., np.array(to_rows)[:, None], from_rows, :] = met
+                    self._put(to_rows, from_rows, met)
         rows = [row for _, some, *_ in found for row in some]
         gathered = np.empty((*self.s.shape[:-3], 2, len(rows), self.s.shape[-1]), complex)
         at = 0
@@ -189,6 +189,14 @@ class _Assembly:
             np.multiply(ways[..., 1, :, :], self.turns[edge, up][..., None, :], out=gathered[..., 1, span, :])
             at = span.stop
         self.below[up] = rows, gathered, None
+
+    def _put(self, to_rows: list[int], from_rows: list[int], met: ComplexArray) -> None:
+        """Write a block of S; terminals in the plan's order make it a plain one."""
+        to, source = run(to_rows), run(from_rows)
+        if isinstance(to, slice) or isinstance(source, slice):
+            self.s[..., to, source, :] = met
+        else:
+            self.s[..., to[:, None], source, :] = met
 
     def _back(self, edges: Rows | int) -> State:
         return self.back_v[..., edges, :], self.back_i[..., edges, :]

@@ -30,8 +30,8 @@ def solve(plan: Plan, topology: Topology | None = None) -> Answer:
     if topology.has_loops:
         refuse_undetermined(plan)
     values = line_values(plan, topology)
-    flows = drive_in_slices(plan, topology, values, frequency_hz, radio)
-    solved = Solved(plan, topology, values, frequency_hz, radio, flows)
+    flows, network = drive_in_slices(plan, topology, values, frequency_hz, radio)
+    solved = Solved(plan, topology, values, frequency_hz, radio, flows, network)
     return Answer(solved, grid_hz.size, tuple(c.name for c in plan.channels))
 
 

@@ -94,7 +94,8 @@ class Topology:
     lines : (part, line) of each row of the line table. roots : (edge, part) where each piece hangs, the radio's first.
     cascaded : edges with a state; edges : all, those inside cores last; one more row, always zero, serves the rest.
     port_edge, port_sign : per port of the plan, in order: its edge, and +1 where the edge's current flows into the
-    part; part_start : where the ports of each part begin.
+    part; part_start : where the ports of each part begin; nth_ports : for n = 1, 2 ...: the parts that have an nth
+    port, its edges and signs (a column).
     far : per port: +1 where the edge's current runs from near to far, 0 where the radio does not reach.
     """
 
@@ -110,6 +111,7 @@ class Topology:
     port_edge: Index
     port_sign: Index
     part_start: Index
+    nth_ports: list[tuple[Rows, Index, Index]]
     far: Index
     line_planes: dict[tuple[int, int], tuple[tuple[int, int], tuple[int, int]]]
 
@@ -149,6 +151,7 @@ class _Compiler:
         self.height: dict[int, int] = {}
         self.weight: dict[int, int] = {}
         self.into: dict[int, int] = {}  # edge -> element that its current flows into
+        self.tied_to_itself: set[int] = set()
         self.roots: list[tuple[int, int]] = []
         self.reached: set[int] = set()
         self.number: dict[int, int] = {}
@@ -182,22 +185,24 @@ class _Compiler:
                 self._single(self.graph.elements[group[0]], up)
 
     def _single(self, element: Element, up: int) -> None:
-        others = [edge for edge in element.edges if edge != up]
-        height = 1 + max([self.height[e] for e in others], default=-1)
+        height, others = self.height, [edge for edge in element.edges if edge != up]
         part = None if element.part == OPEN else self.plan.parts[element.part].part
         if not others:
             self.ends.append((up, element.part))
+            height[up], self.weight[up] = 0, 1
+        elif element.line is not None:
+            (down,) = others
+            height[up], self.weight[up] = height[down] + 1, self.weight[down]
+            self.lines.append((height[up], up, down, element))
         elif isinstance(part, Junction):
             self._joined(others, up)
-            return
-        elif element.line is not None:
-            self.lines.append((height, up, others[0], element))
-        elif isinstance(part, TwoPort):
-            self.found.append((height, ChainOp(up, others[0], element.part, element.edges[1] == up)))
         else:
-            self.found.append((height, BlockOp(up, others, element.edges.index(up), element.part, None)))
-        self.height[up] = height
-        self.weight[up] = self.weight[others[0]] if len(others) == 1 else 1
+            height[up], self.weight[up] = 1 + max(height[e] for e in others), 1
+            if isinstance(part, TwoPort):
+                op: Op = ChainOp(up, others[0], element.part, element.edges[1] == up)
+            else:
+                op = BlockOp(up, others, element.edges.index(up), element.part, None)
+            self.found.append((height[up], op))
 
     def _joined(self, edges: list[int], up: int) -> None:
         """A tee as joins of two in a balanced tree, so that a wide one is no deeper than it must be."""
@@ -216,7 +221,7 @@ class _Compiler:
             queue.append(out)
 
     def _core(self, group: list[int], up: int) -> None:
-        elements, inside = self.graph.elements, set(group)
+        elements = self.graph.elements
         starts = np.cumsum([0, *(len(elements[e].edges) for e in group)]).tolist()
         rows: dict[int, list[int]] = {}
         for e, start in zip(group, starts, strict=False):
@@ -230,9 +235,10 @@ class _Compiler:
                 tied.append((at[0], at[1]) if a == b or group.index(a) < group.index(b) else (at[1], at[0]))
                 inner.append(edge)
                 self.into[edge] = b
+                if a == b:
+                    self.tied_to_itself.add(edge)
             else:
                 outer.append(edge)
-        assert inside
         lines = [OPEN] * len(group)
         core = Core([elements[e] for e in group], lines, starts[:-1], tied, inner, [rows[e][0] for e in outer])
         others = [e for e in outer if e != up]
@@ -255,12 +261,12 @@ class _Compiler:
                 found = line_rows[height]
                 rows = slice(len(lines), len(lines) + len(found))
                 lines.extend(element for *_, element in found)
-                down = _rows([number[d] for _, _, d, _ in found])
+                down = run([number[d] for _, _, d, _ in found])
                 ops.append(LineBatch(self._take([up for _, up, *_ in found]), down, rows))
             for rescale in (False, True):
                 some = [j for j in join_rows.get(height, ()) if j[4] == rescale]
                 if some:
-                    first, second = _rows([number[j[2]] for j in some]), _rows([number[j[3]] for j in some])
+                    first, second = run([number[j[2]] for j in some]), run([number[j[3]] for j in some])
                     ops.append(JoinBatch(self._take([j[1] for j in some]), first, second, rescale))
             for op in at_height.get(height, ()):
                 assert isinstance(op, ChainOp | BlockOp)
@@ -284,7 +290,10 @@ class _Compiler:
     def _described(self, ops: list[Op], lines: list[Element], cascaded: int) -> Topology:
         number, plan, at_port = self.number, self.plan, self.graph.at_port
         planes = [self._plane(*at) for at in at_port.values()]
-        counts = [p.part.ports for p in plan.parts]
+        counts = np.array([p.part.ports for p in plan.parts], np.intp)
+        start = np.cumsum(counts) - counts
+        port_edge = np.array([edge for edge, _ in planes], np.intp)
+        port_sign = np.array([sign for _, sign in planes], np.intp)
         return Topology(
             shape=shape_of(plan),
             joins=plan.joins,
@@ -295,9 +304,10 @@ class _Compiler:
             cascaded=cascaded,
             edges=len(number),
             port_row={port: n for n, port in enumerate(at_port)},
-            port_edge=np.array([edge for edge, _ in planes], np.intp),
-            port_sign=np.array([sign for _, sign in planes], np.intp),
-            part_start=np.cumsum([0, *counts], dtype=np.intp)[:-1],
+            port_edge=port_edge,
+            port_sign=port_sign,
+            part_start=start,
+            nth_ports=_nth_ports(counts, start, port_edge, port_sign),
             far=self._far(planes),
             line_planes={
                 (e.part, e.line): (self._plane_of(e, 0), self._plane_of(e, 1)) for e in lines if e.line is not None
@@ -308,11 +318,12 @@ class _Compiler:
         """Edge at a terminal, and +1 where its current flows into the element; the zero row where nothing drives."""
         edges = self.graph.elements[element].edges
         edge = edges[terminal]
-        if edge not in self.into:
+        target = self.into.get(edge)
+        if target is None:
             return len(self.number), 1
-        a, b = self.graph.ends[edge]
-        into = edges.index(edge) != terminal if a == b else self.into[edge] == element
-        return self.number[edge], 1 if into else -1
+        if target == element and edge in self.tied_to_itself:
+            return self.number[edge], 1 if edges.index(edge) != terminal else -1
+        return self.number[edge], 1 if target == element else -1
 
     def _plane_of(self, element: Element, terminal: int) -> tuple[int, int]:
         edge = element.edges[terminal]
@@ -350,7 +361,17 @@ def _by_height(rows: list[tuple]) -> dict[int, list[tuple]]:  # type: ignore[typ
     return found
 
 
-def _rows(numbers: list[int]) -> Rows:
+def _nth_ports(counts: Index, start: Index, edge: Index, sign: Index) -> list[tuple[Rows, Index, Index]]:
+    found: list[tuple[Rows, Index, Index]] = []
+    parts: Index = np.arange(counts.size)
+    for n in range(int(counts.max(initial=0))):
+        parts = parts[counts[parts] > n]
+        at = start[parts] + n
+        found.append((slice(None) if n == 0 else parts, edge[at], sign[at][:, None]))
+    return found
+
+
+def run(numbers: list[int]) -> Rows:
     """A slice where the numbers run on, an index array otherwise."""
     if numbers == list(range(numbers[0], numbers[0] + len(numbers))):
         return slice(numbers[0], numbers[0] + len(numbers))

@@ -342,11 +342,11 @@ def doubled(plan: Plan, part_id: str) -> Plan:
     twice = dataclasses.replace(placed.part, cable="twice")
     tee = Tee()
     parts = [dataclasses.replace(p, part=twice) if p.id == part_id else p for p in plan.parts]
-    parts += [Placed("beside", twice), Placed("tee 1", tee), Placed("tee 2", tee)]
-    moves = {Port(part_id, n): Port(f"tee {n}", 1) for n in (1, 2)}
+    parts += [Placed("beside", twice), Placed("split 1", tee), Placed("split 2", tee)]
+    moves = {Port(part_id, n): Port(f"split {n}", 1) for n in (1, 2)}
     joins = [(moved(a, moves), moved(b, moves)) for a, b in plan.joins]
     joins += [
-        (Port(f"tee {n}", arm), Port(name, n)) for n in (1, 2) for arm, name in ((2, part_id), (3, "beside"))
+        (Port(f"split {n}", arm), Port(name, n)) for n in (1, 2) for arm, name in ((2, part_id), (3, "beside"))
     ]
     cables = {**plan.cables, "twice": dataclasses.replace(cable, z0_ohm=2 * cable.z0_ohm)}
     return dataclasses.replace(with_parts(plan, parts, joins), cables=cables)

@@ -29,6 +29,7 @@ _LENGTH_DECIMALS: dict[LengthUnit, tuple[tuple[float, int], ...]] = {
     "wl": ((math.inf, 3),),
     "ps": ((100, 1), (math.inf, 0)),
 }
+_FIELD_UNITS = {"Hz": ("MHz", 1e6), "H": ("nH", 1e-9), "F": ("pF", 1e-12), "ohm": ("Ω", 1.0), "deg": ("°", 1.0)}
 _LARGEST_IMPEDANCE_OHM = 1e12
 """What is larger is an open circuit with rounding noise."""
 
@@ -57,16 +58,33 @@ def editable_length(
     unit, unit_m = _known_unit(unit, frequency_hz, velocity_factor)
     figure = length_m / unit_m
 
-    def same(written: float) -> bool:
-        return abs(written - figure) <= READ_BACK_REL / 2 * abs(figure)
-
     if unit == "in" and abs(figure) < _LARGEST_FRACTION_IN:
         parts = round(figure * _INCH_PARTS_WRITTEN)
-        if same(parts / _INCH_PARTS_WRITTEN):
+        if _reads_back(parts / _INCH_PARTS_WRITTEN, figure):
             return _inches(parts, _INCH_PARTS_WRITTEN)
-    roundings = (float(f"{figure:.{digits}e}") for digits in range(17))
-    shortest = next(filter(same, roundings), figure)
-    return repr(shortest).removesuffix(".0") + _UNIT_TEXT.get(unit, f" {unit}")
+    return _shortest(figure) + _UNIT_TEXT.get(unit, f" {unit}")
+
+
+def field_unit(unit: str) -> str:
+    """The unit in which a field for a quantity is written, and which a bare number in it has."""
+    return _FIELD_UNITS.get(unit, (unit, 1.0))[0]
+
+
+def editable_quantity(value: float, *, unit: str) -> str:
+    """The shortest text in the field's unit that reads back to the same value within READ_BACK_REL.
+
+    value : finite; unit : as in entry.read_quantity.
+    """
+    written, scale = _FIELD_UNITS.get(unit, (unit, 1.0))
+    return _shortest(value / scale) + (written if written in ("", "°") else f" {written}")
+
+
+def editable_impedance(impedance_ohm: complex) -> str:
+    """The shortest text that reads back to the same finite impedance, such as 36 - j12.5 Ω."""
+    if impedance_ohm.imag == 0:
+        return f"{_shortest(impedance_ohm.real)} Ω"
+    sign = "-" if impedance_ohm.imag < 0 else "+"
+    return f"{_shortest(impedance_ohm.real)} {sign} j{_shortest(abs(impedance_ohm.imag))} Ω"
 
 
 def format_frequency(frequency_hz: float) -> str:
@@ -93,13 +111,27 @@ def format_impedance(impedance_ohm: complex) -> str:
 
 def format_power(power_w: float) -> str:
     """A power to be shown, with three digits."""
-    if not math.isfinite(power_w):
-        return _without_value(power_w)
-    rounded_w = float(f"{power_w:.2e}")
-    scales = ((1e3, "kW"), (1.0, "W"), (1e-3, "mW"), (1e-6, "µW"), (1e-9, "nW"))
-    scale, unit = _scale(abs(rounded_w), scales) if rounded_w else (1.0, "W")
-    figure = rounded_w / scale
-    return f"{_rounded(figure, min(_places(figure), 3))} {unit}"
+    return _three_digits(power_w, "W")
+
+
+def format_voltage(voltage_v: float) -> str:
+    """A voltage to be shown, with three digits."""
+    return _three_digits(voltage_v, "V")
+
+
+def format_current(current_a: float) -> str:
+    """A current to be shown, with three digits."""
+    return _three_digits(current_a, "A")
+
+
+def format_angle(angle_deg: float) -> str:
+    """An angle to be shown, in tenths."""
+    return f"{_fixed(angle_deg, 1)}°" if math.isfinite(angle_deg) else _without_value(angle_deg)
+
+
+def format_share(share: float) -> str:
+    """A part of a whole to be shown in tenths of a percent."""
+    return f"{_fixed(100 * share, 1)} %" if math.isfinite(share) else _without_value(share)
 
 
 def format_db(level_db: float) -> str:
@@ -126,6 +158,28 @@ def _known_unit(
     except Unreadable:
         return "mm", 1e-3
     return unit, float(scale)
+
+
+def _reads_back(written: float, figure: float) -> bool:
+    return abs(written - figure) <= READ_BACK_REL / 2 * abs(figure)
+
+
+def _shortest(figure: float) -> str:
+    """The figure with as few digits as read back."""
+    roundings = (float(f"{figure:.{digits}e}") for digits in range(17))
+    shortest = next((written for written in roundings if _reads_back(written, figure)), figure)
+    return repr(shortest + 0.0).removesuffix(".0")
+
+
+def _three_digits(value: float, unit: str) -> str:
+    """A value in its unit or in thousands or thousandths of it."""
+    if not math.isfinite(value):
+        return _without_value(value)
+    rounded = float(f"{value:.2e}")
+    scales = ((1e3, f"k{unit}"), (1.0, unit), (1e-3, f"m{unit}"), (1e-6, f"µ{unit}"), (1e-9, f"n{unit}"))
+    scale, scaled_unit = _scale(abs(rounded), scales) if rounded else (1.0, unit)
+    figure = rounded / scale
+    return f"{_rounded(figure, min(_places(figure), 3))} {scaled_unit}"
 
 
 def _scale(size: float, scales: tuple[tuple[float, str], ...]) -> tuple[float, str]:

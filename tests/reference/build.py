@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import re
 from collections.abc import Iterable
+from itertools import pairwise
 from math import pi, sqrt
 from types import MappingProxyType
 from typing import NamedTuple
@@ -111,7 +112,7 @@ def circuit(
 def _chain(text: str) -> list[Join]:
     words = [word.strip() for word in text.split(">")]
     found = []
-    for n, (a, b) in enumerate(zip(words, words[1:], strict=False)):
+    for n, (a, b) in enumerate(pairwise(words)):
         leaves = a if ":" in a else f"{a}:{1 if n == 0 else 2}"
         enters = b if ":" in b else f"{b}:1"
         found.append((_port(leaves), _port(enters)))
@@ -139,9 +140,7 @@ def sweep(
     return {r: answer.channels[str(f)] for r, f in zip(ratios, frequencies_hz, strict=True)}
 
 
-def centre(
-    joins: str, *, radio_ohm: complex = 50.0, reference_ohm: float = 50.0, **parts: Part | Section
-) -> Figures:
+def centre(joins: str, *, radio_ohm: complex = 50.0, reference_ohm: float = 50.0, **parts: Part | Section) -> Figures:
     """The solved figures (F = 1) at F0."""
     return sweep([1.0], joins, radio_ohm=radio_ohm, reference_ohm=reference_ohm, **parts)[1.0]
 
@@ -181,12 +180,12 @@ def deg(ratio: complex) -> float:
 def expect(got: complex, printed: str, *, relative: float = 0.0, absolute: float = 0.0) -> None:
     """Fail unless a figure is the printed one, to the tolerance and half a unit of the last printed digit.
 
-    printed : a number as on paper: "-0.53452", "30.5 + 40j". One of fewer than five digits is taken as exact. A
-    relative tolerance is one of the magnitude.
+    printed : a number as on paper: "-0.53452", "30.5 + 40j". One of fewer than five digits is taken as exact, and 0
+    is met to 1e-9. A relative tolerance is one of the magnitude.
     """
     wanted = complex(printed.replace(" ", ""))
     rounding = [_half_unit(number) for number in re.findall(r"[\d.]+", printed)]
-    allowed = max(relative * abs(wanted), absolute) + float(np.linalg.norm(rounding))
+    allowed = max(relative * abs(wanted), absolute, 0.0 if wanted else 1e-9) + float(np.linalg.norm(rounding))
     assert abs(got - wanted) <= allowed, f"got {got}, printed {printed}, allowed {allowed:.2g}"
 
 

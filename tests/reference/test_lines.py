@@ -243,9 +243,7 @@ def test_tl_11_twelfth_wave() -> None:
 
 def test_tl_11_twelfth_wave_in_the_wrong_order() -> None:
     """TL-11. With the two sections exchanged the SWR is 1.5."""
-    found = centre(
-        "radio > near > far > A", near=line(50, BRAMHAM_DEG), far=line(75, BRAMHAM_DEG), A=antenna(75)
-    )
+    found = centre("radio > near > far > A", near=line(50, BRAMHAM_DEG), far=line(75, BRAMHAM_DEG), A=antenna(75))
     expect(swr(impedance(found, "near:1")), "1.50000", absolute=1e-5)
 
 

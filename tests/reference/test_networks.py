@@ -26,7 +26,8 @@ from tests.reference.build import (
     swr,
 )
 
-# Pozar = D. M. Pozar, Microwave Engineering, 4th ed., Wiley 2012; section and table numbers from memory, values computed.
+# Pozar = D. M. Pozar, Microwave Engineering, 4th ed., Wiley 2012; section and table numbers from memory, values
+# computed from them.
 
 Matrix = tuple[tuple[str, str], tuple[str, str]]
 
@@ -176,9 +177,7 @@ def test_ab_05_power_waves(z1: str, z2: str, s11: str, s21: str, s22: str) -> No
     expect(back[1], s21, relative=1e-5)
 
 
-@pytest.mark.parametrize(
-    ("reference", "printed"), [("50", "-0.333333j"), ("75", "-0.221239 - 0.318584j")]
-)
+@pytest.mark.parametrize(("reference", "printed"), [("50", "-0.333333j"), ("75", "-0.221239 - 0.318584j")])
 def test_ab_06_one_port_at_two_references(reference: str, printed: str) -> None:
     """AB-06. Kurokawa 1965; Marks and Williams, J. Res. NIST 97 (1992) 533: 40 - 30j ohm."""
     found = centre("radio > end", reference_ohm=float(reference), end=load(40 - 30j))
@@ -206,9 +205,7 @@ AB_07 = """
 
 
 @pytest.mark.parametrize(("vswr", "size", "return_loss_db", "mismatch_db", "reflected_percent"), rows(AB_07))
-def test_ab_07_mismatch(
-    vswr: str, size: str, return_loss_db: str, mismatch_db: str, reflected_percent: str
-) -> None:
+def test_ab_07_mismatch(vswr: str, size: str, return_loss_db: str, mismatch_db: str, reflected_percent: str) -> None:
     """AB-07. Pozar, eq. (2.38)-(2.41): loads above and below 50 ohm, through 77 degrees of 50 ohm line."""
     for ohm in (50 * float(vswr), 50 / float(vswr)):
         found = centre("radio > L > A", L=line(50, 77), A=antenna(ohm))
