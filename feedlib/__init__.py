@@ -1,4 +1,4 @@
-"""Feed harnesses computed: read a plan, check it, solve it. What stands here is the public interface; see `conventions`."""
+"""Feed harnesses computed: read a plan, check it, solve it. Only what stands here is public; see `conventions`."""
 
 from feedlib.answer import Answer, Figures, Verdict
 from feedlib.check import Problem, check

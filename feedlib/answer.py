@@ -10,11 +10,11 @@ from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 from functools import cached_property
 from types import MappingProxyType
-from typing import Any
+from typing import Any, TypeVar
 
 import numpy as np
 
-from feedlib.conventions import Array, ComplexArray, Index
+from feedlib.conventions import Array, ComplexArray
 from feedlib.flows import Flows, LineValues, Network, network_of, standing_wave
 from feedlib.harness import MAX_BYTES, bytes_of, harness_s
 from feedlib.parts import Antenna, Radio
@@ -32,6 +32,9 @@ class Verdict:
     worst: float
     frequency_hz: float
     holds: bool
+
+
+Frozen = TypeVar("Frozen", bound=np.ndarray[Any, Any])
 
 
 class Figures:
@@ -117,11 +120,11 @@ class Figures:
 
     def voltage_v(self, port: str) -> ComplexArray:
         """(F,) voltage at a port; 0 where the radio does not reach."""
-        return self._solved.at_port(self._solved.port_rows[port])[0][..., self._part]
+        return self._solved.at_port(port)[0][..., self._part]
 
     def current_a(self, port: str) -> ComplexArray:
         """(F,) current into the part at a port."""
-        return self._solved.at_port(self._solved.port_rows[port])[1][..., self._part]
+        return self._solved.at_port(port)[1][..., self._part]
 
 
 class Answer(Figures):
@@ -198,14 +201,9 @@ class Solved:
         self.frequency_hz, self.radio, self.flows, self._network = frequency_hz, radio, flows, network
         self.antennas = [(n, p.id, p.part) for n, p in enumerate(plan.parts) if isinstance(p.part, Antenna)]
         self.antenna_ids = tuple(part_id for _, part_id, _ in self.antennas)
-        rows = topology.part_start[[n for n, *_ in self.antennas]]
-        self._antenna_edge: Index = topology.port_edge[rows]
-        self._antenna_sign = topology.port_sign[rows][:, None]
-
-    @cached_property
-    def port_rows(self) -> dict[str, int]:
-        """Where each port stands in the topology."""
-        return {f"{part}:{number}": row for (part, number), row in self.topology.port_row.items()}
+        planes = [topology.planes[n][0] for n, *_ in self.antennas]
+        self._antenna_edge = [edge for edge, _ in planes]
+        self._antenna_sign = np.array([sign for _, sign in planes], float).reshape(-1, 1)
 
     @property
     def terminals(self) -> list[int]:
@@ -279,34 +277,43 @@ class Solved:
     @cached_property
     def part_loss(self) -> dict[str, Array]:
         """(F,) by part id: what flows in less what flows out, over the available power."""
-        lost = np.zeros((*self._power.shape[:-2], len(self.plan.parts), self.frequency_hz.size))
-        for parts, edges, signs in self.topology.nth_ports:
-            lost[..., parts, :] += self._power[..., edges, :] * signs
-        _frozen(lost)
-        return {p.id: lost[..., n, :] for n, p in enumerate(self.plan.parts) if not isinstance(p.part, Radio | Antenna)}
+        power = self._rows(self._power)
+        found = {}
+        for placed, planes in zip(self.plan.parts, self.topology.planes, strict=True):
+            if not isinstance(placed.part, Radio | Antenna):
+                (edge, sign), *rest = planes
+                lost = power[edge] * sign
+                for edge, sign in rest:
+                    (np.add if sign > 0 else np.subtract)(lost, power[edge], out=lost)
+                found[placed.id] = _frozen(lost)
+        return found
 
-    def at_port(self, row: int) -> tuple[ComplexArray, ComplexArray]:
+    @staticmethod
+    def _rows(array: Any) -> list[Any]:
+        """The rows of (..., R, F), each (..., F)."""
+        return list(np.moveaxis(array, -2, 0))
+
+    def at_port(self, port: str) -> tuple[ComplexArray, ComplexArray]:
         """Voltage, and current into the part, each (F,)."""
-        edge, flows = self.topology.port_edge[row], self.flows
-        scale = flows.scale[..., edge, :]
-        return scale * flows.v[..., edge, :], scale * flows.i[..., edge, :] * self.topology.port_sign[row]
+        part, number = self.topology.ports[port]
+        edge, sign = self.topology.planes[part][number]
+        scale = self.flows.scale[..., edge, :]
+        return scale * self.flows.v[..., edge, :], scale * self.flows.i[..., edge, :] * sign
 
     @cached_property
     def port_impedance(self) -> dict[str, ComplexArray]:
         """(F,) by port: V/I from near to far."""
-        v, i, far = self.flows.v, self.flows.i, self.topology.far.tolist()
-        with np.errstate(divide="ignore", invalid="ignore"):
+        v, i = self.flows.v, self.flows.i
+        with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
             z = v / i
         if not i.all():
             z[i == 0] = np.inf
-        _frozen(z)
-        found = {port: z[..., edge, :] for port, edge in zip(self.port_rows, self.topology.port_edge, strict=True)}
-        for (port, row), way in zip(self.port_rows.items(), far, strict=True):
-            if way == 0:
-                found[port] = _frozen(np.full(found[port].shape, complex(np.nan, np.nan)))
-            elif way < 0:
-                against = z[..., self.topology.port_edge[row], :]
-                found[port] = _frozen(np.where(np.isinf(against), against, -against))
+        rows = self._rows(_frozen(z))
+        unknown = _frozen(np.full(rows[0].shape, complex(np.nan, np.nan)))
+        found = {}
+        for port, (part, number) in self.topology.ports.items():
+            far, (edge, _) = self.topology.far[part][number], self.topology.planes[part][number]
+            found[port] = rows[edge] if far > 0 else unknown if far == 0 else _turned(rows[edge])
         return found
 
     def _network_at(self, part: slice) -> Network:
@@ -340,15 +347,15 @@ class Solved:
         assert isinstance(part, Lines)
         number = getattr(part, "main_line", 0)
         planes = topology.line_planes.get((index, number))
-        row = topology.part_start[index]
-        if planes is None or topology.far[row] == 0:
+        far = topology.far[index][0]
+        if planes is None or far == 0:
             return None
         cable = getattr(part, "cable", None)
         line = part.lines(None if cable is None else plan.cables[cable])[number]
         first, second = (self._at_plane(edge, sign, at) for edge, sign in planes)
         f = float(self.frequency_hz[at])
         # The current runs from near to far; where it runs into port 1, port 1 is the entry.
-        if topology.port_sign[row] == topology.far[row]:
+        if topology.planes[index][0][1] == far:
             return standing_wave(first, (second[0], -second[1]), line, f, points)
         x, along, forward = standing_wave(second, (first[0], -first[1]), line, f, points)
         return x, along[::-1], forward
@@ -359,10 +366,18 @@ class Solved:
         return scale * self.flows.v[..., edge, at], sign * scale * self.flows.i[..., edge, at]
 
 
+def _turned(z_ohm: ComplexArray) -> ComplexArray:
+    """The impedance for the current's other direction; an open stays an open."""
+    turned: ComplexArray = np.where(np.isinf(z_ohm), z_ohm, -z_ohm)
+    turned.flags.writeable = False
+    return turned
+
+
 def _real_product(a: ComplexArray, b: ComplexArray) -> Array:
     """Re(a b*), by real arithmetic."""
-    product = a.view(float) * b.view(float)
-    return product[..., 0::2] + product[..., 1::2]
+    product: Array = a.view(float) * b.view(float)
+    found: Array = product[..., 0::2] + product[..., 1::2]
+    return found
 
 
 def smallest_arc_deg(current: ComplexArray, wanted_deg: Array) -> Array:
@@ -376,7 +391,7 @@ def smallest_arc_deg(current: ComplexArray, wanted_deg: Array) -> Array:
     angle = np.degrees(np.angle(current * against)) - (wanted_deg - wanted_deg[:1])
     if wanted_deg.any():
         angle = np.mod(angle + 180, 360) - 180
-    arc = angle.max(axis=-2) - angle.min(axis=-2)
+    arc: Array = angle.max(axis=-2) - angle.min(axis=-2)
     wide = arc > 180
     if not current.all():
         wide |= (current == 0).any(axis=-2)
@@ -393,9 +408,10 @@ def _arc_by_gaps_deg(angle_deg: Array) -> Array:
     # A left-out angle repeats the smallest one, and sorted again it opens no gap.
     ordered = np.sort(np.where(np.isnan(ordered), ordered[..., :1, :], ordered), axis=-2)
     gaps = np.diff(ordered, axis=-2, append=ordered[..., :1, :] + 360.0)
-    return np.nan_to_num(360.0 - gaps.max(axis=-2))
+    found: Array = np.nan_to_num(360.0 - gaps.max(axis=-2))
+    return found
 
 
-def _frozen(array: Any) -> Any:
+def _frozen(array: Frozen) -> Frozen:
     array.flags.writeable = False
     return array

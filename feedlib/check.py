@@ -9,7 +9,7 @@ from feedlib.answer import JUDGED
 from feedlib.errors import SolveError
 from feedlib.graph import joins_away
 from feedlib.parts import Antenna, Coax, Radio
-from feedlib.plan import Plan
+from feedlib.plan import Limits, Plan
 from feedlib.schema import specs
 from feedlib.undetermined import refuse_undetermined
 
@@ -106,7 +106,7 @@ def _reach(plan: Plan) -> Iterator[Problem]:
 
 
 def _limits(plan: Plan) -> Iterator[Problem]:
-    for name, spec in specs(type(plan.limits)).items():
+    for name, spec in specs(Limits).items():
         if getattr(plan.limits, name) is not None and name not in JUDGED:
             yield Problem(
                 None,

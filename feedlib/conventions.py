@@ -2,8 +2,8 @@
 
 Time factor e^(+jwt). V and I are rms. Phase reference: the source's open-circuit voltage, real and positive,
 2*sqrt(power_w * Re Zs). gamma = alpha + j*beta with alpha in Np/m; a wave that travels along +x goes as e^(-gamma x).
-Power waves after Kurokawa (IEEE Trans. MTT 13, 1965, p. 194): a = (V + Z I)/(2 sqrt(Re Z)), b = (V - Z* I)/(2 sqrt(Re Z)),
-with I flowing into the port; at a real reference they are the ordinary travelling waves.
+Power waves after Kurokawa (IEEE Trans. MTT 13, 1965, p. 194): a = (V + Z I)/(2 sqrt(Re Z)),
+b = (V - Z* I)/(2 sqrt(Re Z)), with I flowing into the port; at a real reference they are the ordinary travelling waves.
 
 Arrays: frequency is the last axis; rows (parts, edges, ports) stand before it; any batch axes (many builds, many
 lengths) stand before those. Only the contract's public arrays, (F, N) and (F, P, P), are turned, as views.

@@ -3,6 +3,13 @@
 from __future__ import annotations
 
 
+def quoted(text: str, longest: int = 40) -> str:
+    """A text from outside as it may stand in a sentence: short, on one line, control characters spelled out."""
+    short = text if len(text) <= longest else text[: longest - 3] + "..."
+    plain = (c if c.isprintable() else c.encode("unicode_escape").decode() for c in short)
+    return '"' + "".join(plain) + '"'
+
+
 class FeedError(ValueError):
     """Base of every error that the input, not the program, has caused."""
 
@@ -18,7 +25,7 @@ class PlanError(FeedError):
         self.reason, self.part, self.field = reason, part, field
 
     def __str__(self) -> str:
-        where = [f"part {self.part!r}" if self.part is not None else "", self.field or ""]
+        where = [f"part {quoted(self.part, 64)}" if self.part is not None else "", self.field or ""]
         place = ", ".join(w for w in where if w)
         return f"{place}: {self.reason}" if place else self.reason
 
@@ -38,4 +45,4 @@ class SolveError(FeedError):
         self.reason, self.part = reason, part
 
     def __str__(self) -> str:
-        return f"part {self.part!r}: {self.reason}" if self.part is not None else self.reason
+        return f"part {quoted(self.part, 64)}: {self.reason}" if self.part is not None else self.reason

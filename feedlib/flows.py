@@ -15,12 +15,14 @@ from feedlib.conventions import WAVE_OHM, Array, ComplexArray
 from feedlib.errors import SolveError
 from feedlib.graph import OPEN
 from feedlib.parts import Radio
-from feedlib.parts.base import Chain, End, Junction, Line, Lines, ManyPort, State, TwoPort
+from feedlib.parts.base import Chain, End, Junction, Line, Lines, ManyPort, TwoPort
 from feedlib.parts.measured import Measured
 from feedlib.plan import Plan
 from feedlib.scatter import Dense, Response, Scatter, Undetermined, joined, renormalised
 from feedlib.topology import BlockOp, ChainOp, Core, JoinBatch, LineBatch, Rows, Topology
 from feedlib.undetermined import refuse_undetermined
+
+ArrayState = tuple[ComplexArray, ComplexArray]
 
 # glibc hands freed memory back to the system, page by page, until it has once freed a block as large as this; after
 # that an answer's arrays come from warm memory, which takes a quarter off the time of a small harness.
@@ -66,7 +68,8 @@ def line_values(plan: Plan, topology: Topology) -> LineValues:
             lines = lines_of[part] = _lines(plan, part)
         rows.append(found.setdefault(lines[n], len(found)))
     columns = np.array(list(found), float).reshape(len(found), len(Line._fields)).T
-    return LineValues(*columns, row=np.array(rows, np.intp))
+    z0_ohm, delay_s, skin_np, dielectric_np, flat_np = columns
+    return LineValues(z0_ohm, delay_s, skin_np, dielectric_np, flat_np, np.array(rows, np.intp))
 
 
 def _lines(plan: Plan, part: int) -> tuple[Line, ...]:
@@ -173,7 +176,7 @@ def _waves(plan: Plan, part: int, line: int, table: LineTable, frequency_hz: Arr
     return renormalised(s, reference, WAVE_OHM)
 
 
-def end_states(network: Network, taken_off: Collection[int] = (), reference_ohm: float = 1.0) -> State:
+def end_states(network: Network, taken_off: Collection[int] = (), reference_ohm: float = 1.0) -> ArrayState:
     """(v, i), each (N, F), of what the plan has at its ends; parts in `taken_off` are replaced by the reference."""
     v = np.ones((len(network.topology.ends), network.frequency_hz.size), complex)
     i = np.zeros_like(v)
@@ -200,7 +203,7 @@ class Looks:
     responses: dict[int, Response]
 
 
-def look_away(network: Network, ends: State) -> Looks:
+def look_away(network: Network, ends: ArrayState) -> Looks:
     """States of all edges, worked out from the ends to the roots."""
     topology, table = network.topology, network.table
     batch, frequencies = network.shape
@@ -213,7 +216,7 @@ def look_away(network: Network, ends: State) -> Looks:
     for op in topology.ops:
         if isinstance(op, LineBatch):
             below = v[..., op.down, :], i[..., op.down, :]
-            v[..., op.up, :], i[..., op.up, :] = through_lines(below, *table.rows(op.rows))
+            through_lines(below, *table.rows(op.rows), (v[..., op.up, :], i[..., op.up, :]))
         elif isinstance(op, JoinBatch):
             first = v[..., op.first, :], i[..., op.first, :]
             second = v[..., op.second, :], i[..., op.second, :]
@@ -240,7 +243,7 @@ def _look_block(network: Network, op: BlockOp, v: ComplexArray, i: ComplexArray)
         raise SolveError("the waves in it have no single answer", part=network.plan.parts[index].id) from None
 
 
-def through_lines(state: State, z0_ohm: Array, q: ComplexArray) -> State:
+def through_lines(state: ArrayState, z0_ohm: Array, q: ComplexArray, out: ArrayState) -> None:
     """States looking into lines: V1 = (e^(gl)/2)[(V2 + Z I2) + q (V2 - Z I2)], Z I1 likewise with a minus.
 
     The factor e^(gl) is left to the scale (s2 = s1 e^(-gl)), so no loss overflows. Real factors work on the real and
@@ -252,13 +255,12 @@ def through_lines(state: State, z0_ohm: Array, q: ComplexArray) -> State:
     half_v -= half_zi
     back = half_v.view(complex)
     back *= q
-    v = forward + half_v
+    np.add(forward, half_v, out=out[0].view(float))
     forward -= half_v
-    forward *= 1 / z0_ohm
-    return v.view(complex), forward.view(complex)
+    np.multiply(forward, 1 / z0_ohm, out=out[1].view(float))
 
 
-def beside(first: State, second: State, rescale: bool) -> tuple[ComplexArray, ComplexArray, Array | None]:
+def beside(first: ArrayState, second: ArrayState, rescale: bool) -> tuple[ComplexArray, ComplexArray, Array | None]:
     """The parallel join of two states, (V1 V2, I1 V2 + I2 V1), and the scale that it was brought to."""
     v = first[0] * second[0]
     i = first[1] * second[0]
@@ -288,16 +290,15 @@ def drive(network: Network, radio: Radio) -> Flows:
     looks = look_away(network, end_states(network))
     v, i = looks.v, looks.i
     edge = topology.roots[0][0]
-    with np.errstate(divide="ignore", invalid="ignore"):
-        top = radio.open_circuit_v / (v[..., edge, :] + radio.impedance_ohm * i[..., edge, :])
-    if not np.isfinite(top).all():
+    whole = v[..., edge, :] + radio.impedance_ohm * i[..., edge, :]
+    if not whole.all():
         refuse_undetermined(network.plan)
         raise SolveError("the currents have no single answer; some part gives out more than it takes, or loops back")
     scale = np.empty(v.shape, complex)
     scale[..., topology.cascaded :, :] = 0
     for other, _ in topology.roots[1:]:
         scale[..., other, :] = 0
-    scale[..., edge, :] = top
+    scale[..., edge, :] = radio.open_circuit_v / whole
     for op in reversed(topology.ops):
         if isinstance(op, LineBatch):
             scale[..., op.down, :] = scale[..., op.up, :] * network.table.k[..., op.rows, :]

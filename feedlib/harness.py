@@ -12,8 +12,7 @@ import numpy as np
 
 from feedlib.conventions import ComplexArray
 from feedlib.errors import SolveError
-from feedlib.flows import Looks, Network, beside, end_states, look_away, through_lines
-from feedlib.parts.base import State
+from feedlib.flows import ArrayState, Looks, Network, beside, end_states, look_away, through_lines
 from feedlib.topology import BlockOp, ChainOp, JoinBatch, LineBatch, Op, Rows, run
 
 MAX_BYTES = 2e9
@@ -97,7 +96,10 @@ class _Assembly:
             self.back_v[..., edge, :], self.back_i[..., edge, :] = self.reference, 1
         for op in reversed(self.topology.ops):
             if isinstance(op, LineBatch):
-                self._set_back(op.down, through_lines(self._back(op.up), *network.table.rows(op.rows)))
+                out = self._back(op.down)
+                through_lines(self._back(op.up), *network.table.rows(op.rows), out)
+                if not isinstance(op.down, slice):
+                    self._set_back(op.down, out)
             elif isinstance(op, JoinBatch):
                 first, second = _at(away, op.first), _at(away, op.second)
                 above = self._back(op.up)
@@ -110,7 +112,7 @@ class _Assembly:
             else:
                 self._turn_block(op)
 
-    def _turn(self, at: Rows, other: Rows, up: slice, above: State, beside_it: State, rescale: bool) -> None:
+    def _turn(self, at: Rows, other: Rows, up: slice, above: ArrayState, beside_it: ArrayState, rescale: bool) -> None:
         """Looking into a join from one of its lower edges: upwards and at the other side by side."""
         v, i, scale = beside(above, beside_it, rescale)
         self._set_back(at, (v, i))
@@ -140,23 +142,23 @@ class _Assembly:
     def _gather(self, op: Op) -> None:
         """Carry the ways below an operation to its upper edge, and fill S where two of them meet."""
         if isinstance(op, LineBatch):
-            k = self.network.table.k[..., op.rows, :]
+            lines = self.network.table.k[..., op.rows, :]
             for n, (up, down) in enumerate(zip(range(op.up.start, op.up.stop), _numbers(op.down), strict=True)):
-                self._along(up, down, k[..., n, :])
+                self._along(up, down, lines[..., n, :])
         elif isinstance(op, ChainOp):
-            k = np.broadcast_to(np.asarray(self.network.chains[op.up].k), self.network.frequency_hz.shape)
-            self._along(op.up, op.down, k)
+            along = np.broadcast_to(np.asarray(self.network.chains[op.up].k), self.network.frequency_hz.shape)
+            self._along(op.up, op.down, along)
         elif isinstance(op, JoinBatch):
             scale = self.away.scales.get(op.up.start)
             pairs = zip(range(op.up.start, op.up.stop), _numbers(op.first), _numbers(op.second), strict=True)
             for n, (up, first, second) in enumerate(pairs):
-                down = [self.away.v[..., second, :], self.away.v[..., first, :]]
+                ways = [self.away.v[..., second, :], self.away.v[..., first, :]]
                 if scale is not None:
-                    down = [d * scale[..., n, :] for d in down]
-                self._meet(up, [first, second], down)
+                    ways = [way * scale[..., n, :] for way in ways]
+                self._meet(up, [first, second], ways)
         else:
-            k = self.away.responses[op.up].k
-            self._meet(op.up, op.down, [k[..., n, :] for n in range(len(op.down))])
+            reached = self.away.responses[op.up].k
+            self._meet(op.up, op.down, [reached[..., n, :] for n in range(len(op.down))])
 
     def _along(self, up: int, down: int, k: ComplexArray) -> None:
         """A reciprocal two-port: the same factor both ways."""
@@ -198,14 +200,14 @@ class _Assembly:
         else:
             self.s[..., to[:, None], source, :] = met
 
-    def _back(self, edges: Rows | int) -> State:
+    def _back(self, edges: Rows | int) -> ArrayState:
         return self.back_v[..., edges, :], self.back_i[..., edges, :]
 
-    def _set_back(self, edges: Rows | int, state: State) -> None:
+    def _set_back(self, edges: Rows | int, state: ArrayState) -> None:
         self.back_v[..., edges, :], self.back_i[..., edges, :] = state
 
 
-def _at(looks: Looks, edges: Rows) -> State:
+def _at(looks: Looks, edges: Rows) -> ArrayState:
     return looks.v[..., edges, :], looks.i[..., edges, :]
 
 

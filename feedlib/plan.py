@@ -12,7 +12,7 @@ from typing import NamedTuple
 import numpy as np
 
 from feedlib.conventions import Array
-from feedlib.errors import FieldError, PlanError
+from feedlib.errors import FieldError, PlanError, quoted
 from feedlib.parts import Part
 from feedlib.schema import Json, Record, field
 
@@ -34,7 +34,7 @@ def read_port(text: str) -> Port:
     """The port written as "<id>:<number>"; FieldError otherwise."""
     part, colon, number = text.rpartition(":")
     if not colon or not number.isascii() or not number.isdigit() or str(int(number[:5])) != number:
-        raise FieldError("joins", f'wants a port like "T1:2", got "{text[:80]}"')
+        raise FieldError("joins", f'wants a port like "T1:2", got {quoted(text, 80)}')
     return Port(part, int(number))
 
 
@@ -51,7 +51,7 @@ class Band(Record):
         Record.__post_init__(self)
         _check_grid(self)
         if self.mark_hz is None:
-            object.__setattr__(self, "mark_hz", (self.start_hz + self.stop_hz) / 2)
+            object.__setattr__(self, "mark_hz", self.start_hz / 2 + self.stop_hz / 2)
 
     @property
     def marked_hz(self) -> float:
@@ -144,7 +144,7 @@ def check_id(name: str) -> None:
     if not 1 <= len(name) <= 64:
         raise PlanError(f"an id has 1 to 64 characters, got {len(name)}", field="id", part=name[:64] or None)
     if ":" in name or any(unicodedata.category(c) in ("Cc", "Cs") for c in name):
-        raise PlanError("an id has no ':' and no control characters", field="id", part=repr(name)[1:-1])
+        raise PlanError("an id has no ':' and no control characters", field="id", part=name)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -169,10 +169,11 @@ class Plan:
         s, b = self.sweep, self.band
         if s is not None and not (s.start_hz <= b.start_hz and b.stop_hz <= s.stop_hz):
             raise PlanError("the sweep wants to hold the whole band", field="sweep")
-        names = [c.name for c in self.channels]
-        for name in names:
-            if names.count(name) > 1:
-                raise PlanError(f"two channels are called {name!r}", field="channels")
+        names: set[str] = set()
+        for channel in self.channels:
+            if channel.name in names:
+                raise PlanError(f"two channels are called {quoted(channel.name)}", field="channels")
+            names.add(channel.name)
         counts: dict[str, int] = {}
         for placed in self.parts:
             if placed.id in counts:
@@ -182,7 +183,7 @@ class Plan:
         for join in self.joins:
             for port in join:
                 if port.part not in counts:
-                    raise PlanError(f"{port} names a part that is not there", field="joins", part=port.part)
+                    raise PlanError(f"{quoted(str(port), 80)} names a part that is not there", field="joins")
                 if not 1 <= port.number <= counts[port.part]:
                     raise PlanError(
                         f"{port} names a port that is not there: the part has {counts[port.part]}",

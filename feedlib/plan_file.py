@@ -11,7 +11,7 @@ from pathlib import Path
 from types import MappingProxyType
 from typing import Any
 
-from feedlib.errors import FieldError, PlanError
+from feedlib.errors import FieldError, PlanError, quoted
 from feedlib.parts import KINDS
 from feedlib.plan import Band, Cable, Channel, Join, Limits, Placed, Plan, Sweep, read_port
 from feedlib.schema import Json, number, read_record, record_json
@@ -49,41 +49,62 @@ def parse_plan(data: bytes) -> Plan:
     except UnicodeDecodeError as error:
         raise PlanError(f"not a plan: byte {error.start} is not UTF-8 text") from None
     try:
-        top = json.loads(text, object_pairs_hook=_object, parse_constant=_constant)
+        top = json.loads(text, object_pairs_hook=_object, parse_constant=_constant, parse_float=_float)
     except json.JSONDecodeError as error:
         raise PlanError(f"not JSON: line {error.lineno}, column {error.colno}: {error.msg}") from None
     except RecursionError:
-        raise PlanError("not a plan: brackets are nested too deeply") from None
+        raise PlanError(TOO_DEEP) from None
     except PlanError:
         raise
     except ValueError:
         raise PlanError("not a plan: a number has too many digits") from None
-    if "\\u" in text:
-        _refuse_half_characters(top)
     if not isinstance(top, dict) or top.get("format") != FORMAT:
         raise PlanError(f'not a plan: wants an object with "format": "{FORMAT}"')
+    _refuse_odd(top)
     return _plan(_migrated(top))
+
+
+MAX_DEPTH = 100
+TOO_DEEP = f"not a plan: brackets are nested too deeply (at most {MAX_DEPTH})"
 
 
 def _object(pairs: list[tuple[str, Json]]) -> dict[str, Json]:
     found: dict[str, Json] = {}
     for key, value in pairs:
         if key in found:
-            raise PlanError(f'the key "{key[:60]}" stands twice in one object')
+            raise PlanError(f"the key {quoted(key)} stands twice in one object")
         found[key] = value
     return found
 
 
-def _refuse_half_characters(top: Json) -> None:
-    """Refuse lone surrogates, which no UTF-8 file can hold."""
-    try:
-        json.dumps(top, ensure_ascii=False).encode()
-    except UnicodeEncodeError:
-        raise PlanError("a text holds half a character (a lone surrogate)") from None
+def _float(text: str) -> float:
+    value = float(text)
+    if value in (float("inf"), float("-inf")):
+        raise PlanError(f"{text[:40]} is a number beyond every range")
+    return value
 
 
 def _constant(name: str) -> Json:
     raise PlanError(f"{name} is not a number that a plan may hold")
+
+
+def _refuse_odd(top: Json) -> None:
+    """Refuse what could be read and not be written again: deep nesting, and half characters (lone surrogates)."""
+    level = [top]
+    for _ in range(MAX_DEPTH):
+        inner: list[Json] = []
+        for value in level:
+            if isinstance(value, dict):
+                inner.extend(value)
+                inner.extend(value.values())
+            elif isinstance(value, list):
+                inner.extend(value)
+            elif isinstance(value, str) and not value.isascii() and any("\ud800" <= c <= "\udfff" for c in value):
+                raise PlanError(f"the text {quoted(value)} holds half a character (a lone surrogate)")
+        if not inner:
+            return
+        level = inner
+    raise PlanError(TOO_DEEP)
 
 
 def _migrated(top: dict[str, Json]) -> dict[str, Json]:
@@ -112,7 +133,7 @@ def _plan(top: dict[str, Json]) -> Plan:
         limits=read_record(Limits, top.get("limits", {}), "limits"),
         cables=MappingProxyType(
             {
-                name: read_record(Cable, c, f"cables {name!r}")
+                name: read_record(Cable, c, f"cables {quoted(name)}")
                 for name, c in _dict(top.get("cables", {}), "cables").items()
             }
         ),
@@ -128,7 +149,7 @@ def _placed(data: Json, n: int) -> Placed:
     part_id = data["id"]
     kind = data.get("kind")
     if not isinstance(kind, str) or kind not in KINDS:
-        raise PlanError(f"wants one of {', '.join(KINDS)}, got {str(kind)[:40]!r}", part=part_id, field="kind")
+        raise PlanError(f"wants one of {', '.join(KINDS)}, got {quoted(str(kind))}", part=part_id, field="kind")
     try:
         at = data.get("at", [0, 0])
         if not isinstance(at, list) or len(at) != 2:
@@ -176,7 +197,7 @@ def write_plan(plan: Plan, path: str | os.PathLike[str]) -> None:
 def write_atomically(path: str | os.PathLike[str], data: bytes) -> None:
     """Put `data` at `path` in one step (OSError when that fails; the old file is then untouched)."""
     target = Path(os.path.realpath(path))
-    handle, name = tempfile.mkstemp(prefix=f".{target.name[:100]}.", suffix=".part", dir=target.parent)
+    handle, name = tempfile.mkstemp(prefix=".saving-", suffix=".part", dir=target.parent)
     try:
         with os.fdopen(handle, "wb") as file:
             file.write(data)

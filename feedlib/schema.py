@@ -14,7 +14,7 @@ import typing
 from collections.abc import Mapping
 from typing import Any, Literal, TypeVar
 
-from feedlib.errors import FieldError
+from feedlib.errors import FieldError, quoted
 
 Json = Any
 """What the JSON reader gives: dict, list, str, int, float, bool or None."""
@@ -103,18 +103,18 @@ R = TypeVar("R", bound=Record)
 
 
 @functools.cache
-def specs(cls: type[Record]) -> Mapping[str, Spec]:
+def specs(cls: type[Any]) -> Mapping[str, Spec]:
     """The described fields of a record, in written order."""
     return {f.name: f.metadata["spec"] for f in dataclasses.fields(cls) if "spec" in f.metadata}
 
 
 @functools.cache
-def _types(cls: type[Record]) -> Mapping[str, Any]:
+def _types(cls: type[Any]) -> Mapping[str, Any]:
     return typing.get_type_hints(cls)
 
 
 @functools.cache
-def _required(cls: type[Record]) -> frozenset[str]:
+def _required(cls: type[Any]) -> frozenset[str]:
     return frozenset(
         f.name
         for f in dataclasses.fields(cls)
@@ -143,7 +143,7 @@ def read_record(cls: type[R], data: Json, where: str = "", skip: tuple[str, ...]
     try:
         return cls(**known, extra=extra)
     except FieldError as error:
-        raise FieldError(prefix + (error.field or ""), error.reason) from None
+        raise FieldError(prefix + error.field if error.field else where, error.reason) from None
 
 
 def record_json(record: Record) -> dict[str, Json]:
@@ -159,7 +159,7 @@ def record_json(record: Record) -> dict[str, Json]:
 
 
 @functools.cache
-def default_of(cls: type[Record], name: str) -> Any:
+def default_of(cls: type[Any], name: str) -> Any:
     """The default of a field."""
     found = next(f for f in dataclasses.fields(cls) if f.name == name)
     return found.default_factory() if found.default_factory is not dataclasses.MISSING else found.default
@@ -250,7 +250,7 @@ def _kind(value: Json) -> str:
     if isinstance(value, bool):
         return str(value).lower()
     if isinstance(value, str):
-        return f'"{value[:37]}..."' if len(value) > 40 else f'"{value}"'
+        return quoted(value)
     if isinstance(value, list):
         return f"a list of {len(value)}"
     if isinstance(value, dict):

@@ -16,9 +16,11 @@ from feedlib.conventions import Index
 from feedlib.graph import OPEN, Element, Graph, Piece, blocks_of, graph_of, joins_away, piece_at
 from feedlib.parts import Antenna, Radio
 from feedlib.parts.base import Junction, Lines, TwoPort
-from feedlib.plan import Join, Plan, Port
+from feedlib.plan import Join, Plan
 
 Rows = slice | Index
+Plane = tuple[int, int]
+"""An edge, and +1 where its current flows into the thing whose plane it is, else -1."""
 RESCALE_AFTER = 8
 """Joins multiply sizes: a join that gathers more ends than this brings its state back to the size of one."""
 
@@ -93,10 +95,9 @@ class Topology:
     ops : from the ends to the roots. ends : part index of the end at edge n, for the first edges.
     lines : (part, line) of each row of the line table. roots : (edge, part) where each piece hangs, the radio's first.
     cascaded : edges with a state; edges : all, those inside cores last; one more row, always zero, serves the rest.
-    port_edge, port_sign : per port of the plan, in order: its edge, and +1 where the edge's current flows into the
-    part; part_start : where the ports of each part begin; nth_ports : for n = 1, 2 ...: the parts that have an nth
-    port, its edges and signs (a column).
-    far : per port: +1 where the edge's current runs from near to far, 0 where the radio does not reach.
+    planes : per part of the plan, per port: its edge, and +1 where the edge's current flows into the part.
+    ports : by name, the part and number (from 0) of each port. far : like planes: +1 where the edge's current runs
+    from near to far, 0 where the radio does not reach. line_planes : the same planes for each line.
     """
 
     shape: Shape
@@ -107,13 +108,10 @@ class Topology:
     roots: list[tuple[int, int]]
     cascaded: int
     edges: int
-    port_row: dict[Port, int]
-    port_edge: Index
-    port_sign: Index
-    part_start: Index
-    nth_ports: list[tuple[Rows, Index, Index]]
-    far: Index
-    line_planes: dict[tuple[int, int], tuple[tuple[int, int], tuple[int, int]]]
+    planes: list[list[Plane]]
+    ports: dict[str, tuple[int, int]]
+    far: list[list[int]]
+    line_planes: dict[tuple[int, int], tuple[Plane, Plane]]
 
     @property
     def has_loops(self) -> bool:
@@ -151,6 +149,7 @@ class _Compiler:
         self.height: dict[int, int] = {}
         self.weight: dict[int, int] = {}
         self.into: dict[int, int] = {}  # edge -> element that its current flows into
+        self.made: list[tuple[int, list[int]]] = []  # edge, edges below it; children before parents
         self.tied_to_itself: set[int] = set()
         self.roots: list[tuple[int, int]] = []
         self.reached: set[int] = set()
@@ -186,6 +185,8 @@ class _Compiler:
 
     def _single(self, element: Element, up: int) -> None:
         height, others = self.height, [edge for edge in element.edges if edge != up]
+        if not isinstance(self.plan.parts[element.part].part, Junction):
+            self.made.append((up, others))
         part = None if element.part == OPEN else self.plan.parts[element.part].part
         if not others:
             self.ends.append((up, element.part))
@@ -218,6 +219,7 @@ class _Compiler:
             self.height[out] = 1 + max(self.height[first], self.height[second])
             self.weight[out] = 1 if rescale else weight
             self.joins.append((self.height[out], out, first, second, rescale))
+            self.made.append((out, [first, second]))
             queue.append(out)
 
     def _core(self, group: list[int], up: int) -> None:
@@ -245,9 +247,29 @@ class _Compiler:
         height = 1 + max((self.height[e] for e in others), default=-1)
         self.found.append((height, BlockOp(up, others, outer.index(up), None, core)))
         self.height[up], self.weight[up] = height, 1
+        self.made.append((up, others))
+
+    def _sides(self) -> dict[int, tuple[int, ...]]:
+        """For each edge, on which side of each join it hangs, nearest first.
+
+        Sorted by it, all first sides of the joins of one height stand before all second ones, in the same order, so
+        that a batch's operands are slices and not scattered rows.
+        """
+        sides: dict[int, tuple[int, ...]] = {}
+        for up, below in reversed(self.made):
+            side = sides.setdefault(up, ())
+            if len(below) == 1:
+                sides[below[0]] = side
+            else:
+                for n, edge in enumerate(below):
+                    sides[edge] = (n, *side)
+        return sides
 
     def _numbered(self) -> Topology:
-        number = self.number
+        number, sides = self.number, self._sides()
+        self.ends.sort(key=lambda end: sides[end[0]])
+        self.lines.sort(key=lambda line: sides[line[1]])
+        self.joins.sort(key=lambda join: sides[join[1]])
         self._take([edge for edge, _ in self.ends])
         ops: list[Op] = []
         lines: list[Element] = []
@@ -288,12 +310,13 @@ class _Compiler:
         return self._described(ops, lines, cascaded)
 
     def _described(self, ops: list[Op], lines: list[Element], cascaded: int) -> Topology:
-        number, plan, at_port = self.number, self.plan, self.graph.at_port
-        planes = [self._plane(*at) for at in at_port.values()]
-        counts = np.array([p.part.ports for p in plan.parts], np.intp)
-        start = np.cumsum(counts) - counts
-        port_edge = np.array([edge for edge, _ in planes], np.intp)
-        port_sign = np.array([sign for _, sign in planes], np.intp)
+        number, plan = self.number, self.plan
+        planes: list[list[Plane]] = [[] for _ in plan.parts]
+        ports: dict[str, tuple[int, int]] = {}
+        for port, (element, terminal) in self.graph.at_port.items():
+            part = self.graph.elements[element].part
+            ports[f"{port.part}:{port.number}"] = part, len(planes[part])
+            planes[part].append(self._plane(element, terminal))
         return Topology(
             shape=shape_of(plan),
             joins=plan.joins,
@@ -303,18 +326,13 @@ class _Compiler:
             roots=[(number[edge], part) for edge, part in self.roots],
             cascaded=cascaded,
             edges=len(number),
-            port_row={port: n for n, port in enumerate(at_port)},
-            port_edge=port_edge,
-            port_sign=port_sign,
-            part_start=start,
-            nth_ports=_nth_ports(counts, start, port_edge, port_sign),
+            planes=planes,
+            ports=ports,
             far=self._far(planes),
-            line_planes={
-                (e.part, e.line): (self._plane_of(e, 0), self._plane_of(e, 1)) for e in lines if e.line is not None
-            },
+            line_planes={(e.part, e.line or 0): (self._plane_of(e, 0), self._plane_of(e, 1)) for e in lines},
         )
 
-    def _plane(self, element: int, terminal: int) -> tuple[int, int]:
+    def _plane(self, element: int, terminal: int) -> Plane:
         """Edge at a terminal, and +1 where its current flows into the element; the zero row where nothing drives."""
         edges = self.graph.elements[element].edges
         edge = edges[terminal]
@@ -325,25 +343,28 @@ class _Compiler:
             return self.number[edge], 1 if edges.index(edge) != terminal else -1
         return self.number[edge], 1 if target == element else -1
 
-    def _plane_of(self, element: Element, terminal: int) -> tuple[int, int]:
+    def _plane_of(self, element: Element, terminal: int) -> Plane:
         edge = element.edges[terminal]
         return self.number[edge], 1 if self.graph.elements[self.into[edge]] is element else -1
 
-    def _far(self, planes: list[tuple[int, int]]) -> Index:
+    def _far(self, planes: list[list[Plane]]) -> list[list[int]]:
         """Tree edges run from near to far as they are; inside loops the count of joins decides."""
         reached = {self.number[edge] for edge in self.reached}
-        far = np.array([edge in reached for edge, _ in planes], np.intp)
+        far = [[int(edge in reached) for edge, _ in row] for row in planes]
         inner = {
             self.number[edge] for _, op in self.found if isinstance(op, BlockOp) and op.core for edge in op.core.inner
         }
         if not inner or not self.reached:
             return far
-        row = {port: n for n, port in enumerate(self.graph.at_port)}
+        index = {p.id: n for n, p in enumerate(self.plan.parts)}
         away = joins_away(self.plan, self.plan.parts[self.roots[0][1]].id)
         for a, b in self.plan.joins:
-            if far[row[a]] and planes[row[a]][0] in inner:
+            edge, _ = planes[index[a.part]][a.number - 1]
+            if edge in inner and edge in reached:
                 near = b if away[b.part] < away[a.part] else a
-                far[row[a]] = far[row[b]] = -planes[row[near]][1]
+                _, into_near = planes[index[near.part]][near.number - 1]
+                for port in (a, b):
+                    far[index[port.part]][port.number - 1] = -into_near
         return far
 
     def _take(self, edges: list[int]) -> slice:
@@ -358,16 +379,6 @@ def _by_height(rows: list[tuple]) -> dict[int, list[tuple]]:  # type: ignore[typ
     found: dict[int, list[tuple]] = {}  # type: ignore[type-arg]
     for row in rows:
         found.setdefault(row[0], []).append(row)
-    return found
-
-
-def _nth_ports(counts: Index, start: Index, edge: Index, sign: Index) -> list[tuple[Rows, Index, Index]]:
-    found: list[tuple[Rows, Index, Index]] = []
-    parts: Index = np.arange(counts.size)
-    for n in range(int(counts.max(initial=0))):
-        parts = parts[counts[parts] > n]
-        at = start[parts] + n
-        found.append((slice(None) if n == 0 else parts, edge[at], sign[at][:, None]))
     return found
 
 

@@ -152,7 +152,8 @@ def marked(plan: Plan, frequency_hz: float) -> Plan:
 
 def with_limit(plan: Plan, name: str, value: float | None) -> Plan:
     """One limit set, or None to take it away."""
-    limits: Limits = replace(plan.limits, **{name: value})
+    fields: dict[str, Any] = {name: value}
+    limits = replace(plan.limits, **fields)
     return replace(plan, limits=limits)
 
 

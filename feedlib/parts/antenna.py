@@ -61,7 +61,7 @@ class Antenna(End):
 
     def state(self, frequency_hz: Array) -> State:
         if self.impedance.fixed_ohm is not None:
-            return impedance_state(self.impedance.fixed_ohm, frequency_hz)
+            return impedance_state(self.impedance.fixed_ohm)
         if self.impedance.resonant is not None:
             r = self.impedance.resonant
             z = r.r_ohm * (1 + 1j * r.q * (frequency_hz / r.f0_hz - r.f0_hz / frequency_hz))

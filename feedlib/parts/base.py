@@ -9,12 +9,14 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import ClassVar, NamedTuple, Protocol
 
+import numpy as np
+
 from feedlib.conventions import Array, ComplexArray
 from feedlib.scatter import Scatter
 from feedlib.schema import Record
 
-State = tuple[ComplexArray, ComplexArray]
-"""(v, i) up to scale, each (..., F); i flows into the part."""
+State = tuple[ComplexArray | np.complex128, ComplexArray | np.complex128]
+"""(v, i) up to scale, each (..., F), or one number for all frequencies; i flows into the part."""
 
 
 class Chain(NamedTuple):

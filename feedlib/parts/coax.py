@@ -18,6 +18,11 @@ class CoaxEnd(Record):
     velocity_factor: float = field("Velocity factor", above=0, high=1)
     length_m: float = field("Length", unit="m", low=0)
 
+    @property
+    def line(self) -> Line:
+        """It as a line."""
+        return Line(self.z0_ohm, self.length_m / (self.velocity_factor * SPEED_OF_LIGHT_M_PER_S))
+
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Coax(Lines):
@@ -46,10 +51,10 @@ class Coax(Lines):
             cable.skin_db_per_100m * self.length_m / 100 * NEPER_PER_DB,
             cable.dielectric_db_per_100m * self.length_m / 100 * NEPER_PER_DB,
         )
-        if self.ends == (None, None):
-            return (main,)
-        outside = [e and Line(e.z0_ohm, e.length_m / (e.velocity_factor * SPEED_OF_LIGHT_M_PER_S)) for e in self.ends]
-        return tuple(line for line in (outside[0], main, outside[1]) if line is not None)
+        first, last = self.ends
+        before = () if first is None else (first.line,)
+        after = () if last is None else (last.line,)
+        return (*before, main, *after)
 
     @property
     def main_line(self) -> int:

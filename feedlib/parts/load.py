@@ -12,10 +12,10 @@ from feedlib.parts.base import End, State
 from feedlib.schema import field
 
 
-def impedance_state(impedance_ohm: complex, frequency_hz: Array) -> State:
+def impedance_state(impedance_ohm: complex) -> State:
     """The state of a constant impedance: (Z, 1) up to scale, kept near one in size."""
     scale = 1 / (abs(impedance_ohm) + 50.0)
-    return np.full(frequency_hz.shape, impedance_ohm * scale), np.full(frequency_hz.shape, scale + 0j)
+    return np.complex128(impedance_ohm * scale), np.complex128(scale)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -28,4 +28,4 @@ class Load(End):
     impedance_ohm: complex = field("Impedance", unit="ohm", low=0, hint="0 is a short")
 
     def state(self, frequency_hz: Array) -> State:
-        return impedance_state(self.impedance_ohm, frequency_hz)
+        return impedance_state(self.impedance_ohm)

@@ -29,18 +29,18 @@ class Lumped(TwoPort):
     def __post_init__(self) -> None:
         Record.__post_init__(self)
         if self.r_ohm is None and self.l_h is None and self.c_f is None:
-            raise FieldError("", "wants at least one of r_ohm, l_h, c_f")
+            raise FieldError("r_ohm", "wants at least one of r_ohm, l_h, c_f")
 
     def ratio(self, frequency_hz: Array) -> tuple[ComplexArray, ComplexArray]:
         """(n, d), each (F,), with Z = n/d: a short is (0, 1), an open is (1, 0)."""
         w = 2 * np.pi * frequency_hz
-        one = np.ones(w.shape, complex)
+        one: ComplexArray = np.ones(w.shape, complex)
         if self.wiring == "series":
-            z = (self.r_ohm or 0.0) + 1j * w * (self.l_h or 0.0)
+            z = one * (self.r_ohm or 0.0) + 1j * w * (self.l_h or 0.0)
             return (z if self.c_f is None else z + 1 / (1j * w * self.c_f)), one
         if self.r_ohm == 0:
             return 0 * one, one
-        y = (1 / self.r_ohm if self.r_ohm else 0.0) + 1j * w * (self.c_f or 0.0)
+        y = one * (1 / self.r_ohm if self.r_ohm else 0.0) + 1j * w * (self.c_f or 0.0)
         return one, (y if self.l_h is None else y + 1 / (1j * w * self.l_h))
 
     def chain(self, frequency_hz: Array) -> Chain:

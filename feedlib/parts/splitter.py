@@ -12,7 +12,7 @@ from typing import ClassVar, Literal
 
 import numpy as np
 
-from feedlib.conventions import Array
+from feedlib.conventions import Array, ComplexArray
 from feedlib.errors import FieldError
 from feedlib.parts.base import ManyPort
 from feedlib.scatter import Dense, Scatter, Star
@@ -75,8 +75,9 @@ def _resistive(part: Splitter, theta: Array) -> Star:
     r = (n - 1) / (n + 1)
     apart = (r - 1) / (r + 1)
     shared = (1 - apart) / (n + 1)
-    flat = np.ones(theta.shape, complex)
-    return Star((apart + shared) * flat, shared * flat, apart * flat, shared * flat, n, part.z0_ohm)
+    flat: ComplexArray = np.ones(theta.shape, complex)
+    common, spread, own = (np.asarray(x * flat, complex) for x in (apart + shared, shared, apart))
+    return Star(common, spread, own, spread, n, part.z0_ohm)
 
 
 def _branch_line(part: Splitter, theta: Array) -> Dense:

@@ -1,0 +1,398 @@
+"""Editors: one for each type of value, with its label, its line of soft text and the sentence of a refusal.
+
+An editor reads and shows; it never changes a plan. Knows no kinds of part.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from typing import Any
+
+from PySide6.QtCore import Qt, Signal
+from PySide6.QtGui import QFocusEvent, QKeyEvent, QResizeEvent, QWheelEvent
+from PySide6.QtWidgets import QComboBox, QHBoxLayout, QLineEdit, QPlainTextEdit, QVBoxLayout, QWidget
+
+from app.editing.entry import EntryError, read_complex_ohm, read_length_m, read_quantity
+from app.editing.wording import (
+    editable_impedance,
+    editable_length,
+    editable_quantity,
+    field_unit,
+    format_frequency,
+    format_length,
+    wheel_step_m,
+)
+from app.look import SIGNS
+from app.panels.around import Around
+from app.panels.style import plain_label, set_text
+
+LABEL_WIDTH = 108
+NOTCH = 120
+"""One notch of a wheel in Qt's eighths of a degree."""
+
+
+class LineField(QLineEdit):
+    """A line of text: `typed` once on Enter or when the focus leaves, `restored` on Esc."""
+
+    typed = Signal(str)
+    restored = Signal()
+
+    def __init__(self, name: str) -> None:
+        super().__init__()
+        self.setAccessibleName(name)
+        self._note = plain_label(role="soft")
+        self._note.setParent(self)
+        self._note.setWordWrap(False)
+        self._note.setAttribute(Qt.WidgetAttribute.WA_TransparentForMouseEvents)
+        self.editingFinished.connect(self._finished)
+
+    def show_text(self, text: str) -> None:
+        """Show what the plan has."""
+        if text != self.text():
+            self.setText(text)
+            self.setCursorPosition(0)
+        self.setModified(False)
+
+    def set_note(self, text: str) -> None:
+        """A soft word at the line's end, such as a unit."""
+        if text != self._note.text():
+            set_text(self._note, text)
+            self._place_note()
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        super().resizeEvent(event)
+        self._place_note()
+
+    def keyPressEvent(self, event: QKeyEvent) -> None:
+        if event.key() == Qt.Key.Key_Escape:
+            self.restored.emit()
+        else:
+            super().keyPressEvent(event)
+
+    def _place_note(self) -> None:
+        self._note.ensurePolished()
+        width = self._note.sizeHint().width() if self._note.text() else 0
+        self._note.setVisible(0 < width < self.width() - 40)
+        self.setTextMargins(0, 0, width + 6 if self._note.isVisibleTo(self) else 0, 0)
+        self._note.setGeometry(self.width() - width - 7, 0, width, self.height())
+
+    def _finished(self) -> None:
+        if self.isModified():
+            self.setModified(False)
+            self.typed.emit(self.text())
+
+
+class ChoiceBox(QComboBox):
+    """A combo box that the wheel passes over, so that scrolling a sheet changes nothing."""
+
+    restored = Signal()
+
+    def __init__(self, name: str) -> None:
+        super().__init__()
+        self.setAccessibleName(name)
+        self.setSizeAdjustPolicy(QComboBox.SizeAdjustPolicy.AdjustToMinimumContentsLengthWithIcon)
+        self.setMinimumContentsLength(4)
+
+    def wheelEvent(self, event: QWheelEvent) -> None:
+        event.ignore()
+
+    def keyPressEvent(self, event: QKeyEvent) -> None:
+        if event.key() == Qt.Key.Key_Escape:
+            self.restored.emit()
+        else:
+            super().keyPressEvent(event)
+
+
+class Editor(QWidget):
+    """A field. `entered`(value, turned): a value that was read; turned : by the wheel, one of many."""
+
+    entered = Signal(object, bool)
+
+    def fill(self, value: Any, around: Around) -> None:
+        """Show the plan's value; what is being typed, and what was refused, stays."""
+        raise NotImplementedError
+
+    def refuse(self, sentence: str) -> None:
+        """Say why the plan did not take the value."""
+        raise NotImplementedError
+
+    def restore(self) -> None:
+        """Show the plan's value again, whatever was typed."""
+        raise NotImplementedError
+
+    def set_group(self, group: str) -> None:
+        """Name what the field belongs to, for those who hear it."""
+        raise NotImplementedError
+
+
+class FieldEditor(Editor):
+    """An editor with one control. wide : the label stands above the control instead of beside it."""
+
+    def __init__(self, label: str, control: QWidget, *, wide: bool = False, hint: str = "") -> None:
+        super().__init__()
+        self.control, self._name, self._group, self._hint = control, label, "", hint
+        self.label = plain_label(label, "soft")
+        self.under = plain_label(hint, "soft")
+        self.fault = plain_label(role="fault")
+        self._value: Any = None
+        self._around: Around | None = None
+        layout = QVBoxLayout(self)
+        layout.setContentsMargins(0, 0, 0, 0)
+        layout.setSpacing(2)
+        if wide:
+            layout.addWidget(self.label)
+            layout.addWidget(control)
+        else:
+            self.label.setFixedWidth(LABEL_WIDTH)
+            row = QHBoxLayout()
+            row.setSpacing(6)
+            row.addWidget(self.label)
+            row.addWidget(control, 1)
+            layout.addLayout(row)
+        layout.addWidget(self.under)
+        layout.addWidget(self.fault)
+        self.under.setVisible(bool(hint))
+        self.fault.hide()
+
+    def fill(self, value: Any, around: Around) -> None:
+        same = value == self._value
+        self._value, self._around = value, around
+        if self.being_typed or (same and self.refused):
+            return
+        self.restore()
+
+    def refuse(self, sentence: str) -> None:
+        set_text(self.fault, f"{SIGNS['fails']} {sentence}")
+        self._mark(True)
+
+    def restore(self) -> None:
+        self._mark(False)
+        if self._around is not None:
+            self.show_value(self._value, self._around)
+
+    def show_value(self, value: Any, around: Around) -> None:
+        """Put a value into the control."""
+        raise NotImplementedError
+
+    def set_group(self, group: str) -> None:
+        self._group = group
+        self.control.setAccessibleName(f"{group}, {self._name}" if group else self._name)
+
+    def rename(self, label: str) -> None:
+        """Another label."""
+        self._name = label
+        set_text(self.label, label)
+        self.set_group(self._group)
+
+    @property
+    def being_typed(self) -> bool:
+        """Whether a person is in the middle of it."""
+        return False
+
+    @property
+    def refused(self) -> bool:
+        """Whether a sentence stands under the control."""
+        return not self.fault.isHidden()
+
+    def say(self, text: str) -> None:
+        """The soft line under the control."""
+        shown = text or self._hint
+        set_text(self.under, shown)
+        self.under.setVisible(bool(shown))
+
+    def _mark(self, bad: bool) -> None:
+        if bad == self.refused:
+            return
+        self.fault.setVisible(bad)
+        self.control.setProperty("bad", bad)
+        self.control.style().unpolish(self.control)
+        self.control.style().polish(self.control)
+
+    def _enter(self, value: Any, turned: bool = False) -> None:
+        """Offer a value; where nothing came of it but no refusal either, the plan's own text comes back."""
+        self._mark(False)
+        self.entered.emit(value, turned)
+        if not self.refused:
+            self.restore()
+
+
+class TextEditor(FieldEditor):
+    """A value written in one line. optional : an empty line is None."""
+
+    def __init__(
+        self, label: str, *, optional: bool = False, wide: bool = False, hint: str = "", placeholder: str = ""
+    ) -> None:
+        self.line = LineField(label)
+        self.line.setPlaceholderText(placeholder)
+        super().__init__(label, self.line, wide=wide, hint=hint)
+        self._optional = optional
+        self.line.typed.connect(self._typed)
+        self.line.restored.connect(self.restore)
+
+    def read(self, text: str, around: Around) -> Any:
+        """The value that a text says (EntryError)."""
+        return text
+
+    def write(self, value: Any, around: Around) -> str:
+        """The text of a value."""
+        return str(value)
+
+    def show_value(self, value: Any, around: Around) -> None:
+        self.line.show_text("" if value is None else self.write(value, around))
+
+    @property
+    def being_typed(self) -> bool:
+        return self.line.hasFocus() and self.line.isModified()
+
+    def _typed(self, text: str) -> None:
+        assert self._around is not None
+        try:
+            value = None if self._optional and not text.strip() else self.read(text, self._around)
+        except EntryError as error:
+            self.refuse(str(error))
+        else:
+            self._enter(value)
+
+
+class QuantityEditor(TextEditor):
+    """A number with a unit; a unit that nobody writes stands at the line's end."""
+
+    def __init__(self, label: str, unit: str, **look: Any) -> None:
+        super().__init__(label, **look)
+        self._unit = "" if "/" in unit else unit
+        if "/" in unit:
+            self.line.set_note(unit)
+
+    def read(self, text: str, around: Around) -> float:
+        return read_quantity(text, unit=self._unit, bare_unit=field_unit(self._unit))
+
+    def write(self, value: Any, around: Around) -> str:
+        return editable_quantity(value, unit=self._unit)
+
+
+class WholeEditor(TextEditor):
+    """A whole number."""
+
+    def read(self, text: str, around: Around) -> int:
+        value = read_quantity(text, unit="")
+        if not value.is_integer():
+            raise EntryError(f"'{text.strip()}' is not a whole number; try {round(value)}.")
+        return int(value)
+
+
+class ImpedanceEditor(TextEditor):
+    """A complex impedance in ohm."""
+
+    def read(self, text: str, around: Around) -> complex:
+        return read_complex_ohm(text)
+
+    def write(self, value: Any, around: Around) -> str:
+        return editable_impedance(value)
+
+
+class LengthEditor(TextEditor):
+    """A length; the wheel turns it, and the line under it says it in degrees, wavelengths and picoseconds."""
+
+    def __init__(self, label: str, **look: Any) -> None:
+        super().__init__(label, wide=True, **look)
+        self._notches = 0.0
+
+    def read(self, text: str, around: Around) -> float:
+        return read_length_m(text, frequency_hz=around.frequency_hz, velocity_factor=around.velocity_factor)
+
+    def write(self, value: Any, around: Around) -> str:
+        return editable_length(value, "mm", frequency_hz=None, velocity_factor=None)
+
+    def show_value(self, value: Any, around: Around) -> None:
+        super().show_value(value, around)
+        if value is None:
+            return
+        known: dict[str, Any] = {"frequency_hz": around.frequency_hz, "velocity_factor": around.velocity_factor}
+        self.line.set_note(format_length(value, "in", **known))
+        if around.velocity_factor is None:
+            self.say("")
+            return
+        angle = f"{format_length(value, 'deg', **known)} at {format_frequency(around.frequency_hz)}"
+        self.say(" · ".join([angle, format_length(value, "wl", **known), format_length(value, "ps", **known)]))
+
+    def wheelEvent(self, event: QWheelEvent) -> None:
+        """A notch is one step, with Shift ten, with Alt a tenth of one."""
+        around, over_line = self._around, self.line.geometry().contains(event.position().toPoint())
+        if not over_line or self.being_typed or self._value is None or not (around and around.velocity_factor):
+            event.ignore()
+            return
+        event.accept()
+        # With Alt held down some systems report the wheel as turned sideways.
+        self._notches += (event.angleDelta().y() or event.angleDelta().x()) / NOTCH
+        whole = int(self._notches)
+        if not whole:
+            return
+        self._notches -= whole
+        step_m = wheel_step_m(frequency_hz=around.frequency_hz, velocity_factor=around.velocity_factor)
+        if event.modifiers() & Qt.KeyboardModifier.ShiftModifier:
+            step_m *= 10
+        elif event.modifiers() & Qt.KeyboardModifier.AltModifier:
+            step_m /= 10
+        self._enter(max(0.0, round(self._value + whole * step_m, 9)), turned=True)
+
+
+class ChoiceEditor(FieldEditor):
+    """One of a few words."""
+
+    def __init__(self, label: str, words: Mapping[Any, str], *, wide: bool = False, hint: str = "") -> None:
+        self.box = ChoiceBox(label)
+        super().__init__(label, self.box, wide=wide, hint=hint)
+        self._values = list(words)
+        self.box.addItems(list(words.values()))
+        self.box.activated.connect(self._chosen)
+        self.box.restored.connect(self.restore)
+
+    def show_value(self, value: Any, around: Around) -> None:
+        self.box.setCurrentIndex(self._values.index(value))
+
+    def _chosen(self, index: int) -> None:
+        self._enter(self._values[index])
+
+
+class NoteEditor(FieldEditor):
+    """Lines of free text."""
+
+    def __init__(self, label: str) -> None:
+        self.text = _NoteField()
+        super().__init__(label, self.text, wide=True)
+        self.text.setAccessibleName(label)
+        self.text.typed.connect(self._enter)
+        self.text.restored.connect(self.restore)
+
+    def show_value(self, value: Any, around: Around) -> None:
+        if value != self.text.toPlainText():
+            self.text.setPlainText(value)
+        self.text.document().setModified(False)
+
+    @property
+    def being_typed(self) -> bool:
+        return self.text.hasFocus() and self.text.document().isModified()
+
+
+class _NoteField(QPlainTextEdit):
+    """Text of a few lines: `typed` when the focus leaves it, `restored` on Esc."""
+
+    typed = Signal(str)
+    restored = Signal()
+
+    def __init__(self) -> None:
+        super().__init__()
+        self.setTabChangesFocus(True)
+        self.setFixedHeight(58)
+
+    def keyPressEvent(self, event: QKeyEvent) -> None:
+        if event.key() == Qt.Key.Key_Escape:
+            self.restored.emit()
+        else:
+            super().keyPressEvent(event)
+
+    def focusOutEvent(self, event: QFocusEvent) -> None:
+        super().focusOutEvent(event)
+        if self.document().isModified() and event.reason() != Qt.FocusReason.PopupFocusReason:
+            self.document().setModified(False)
+            self.typed.emit(self.toPlainText())
