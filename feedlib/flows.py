@@ -58,7 +58,7 @@ class LineTable:
 
 
 def line_values(plan: Plan, topology: Topology) -> LineValues:
-    """The values of the plan's lines; SolveError names a coax whose cable is missing."""
+    """The values of the plan's lines."""
     found: dict[Line, int] = {}
     rows = []
     lines_of: dict[int, tuple[Line, ...]] = {}
@@ -73,13 +73,10 @@ def line_values(plan: Plan, topology: Topology) -> LineValues:
 
 
 def _lines(plan: Plan, part: int) -> tuple[Line, ...]:
-    placed = plan.parts[part]
-    assert isinstance(placed.part, Lines)
-    cable = getattr(placed.part, "cable", None)
-    try:
-        return placed.part.lines(None if cable is None else plan.cables.get(cable))
-    except LookupError:
-        raise SolveError(f"its cable {cable!r} is not in the plan; choose another or add it", part=placed.id) from None
+    lines = plan.parts[part].part
+    assert isinstance(lines, Lines)
+    cable = getattr(lines, "cable", None)
+    return lines.lines(None if cable is None else plan.cables[cable])
 
 
 def line_table(values: LineValues, frequency_hz: Array) -> LineTable:

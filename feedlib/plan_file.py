@@ -112,7 +112,9 @@ def _migrated(top: dict[str, Json]) -> dict[str, Json]:
     if isinstance(version, bool) or not isinstance(version, int) or version < 1:
         raise PlanError(f"wants a whole number from 1 to {VERSION}", field="version")
     if version > VERSION:
-        raise PlanError(f"the plan is of version {version}; this program reads up to {VERSION}", field="version")
+        raise PlanError(
+            f"the plan is of version {quoted(str(version))}; this program reads up to {VERSION}", field="version"
+        )
     while version < VERSION:
         top = MIGRATIONS[version](top)
         version += 1

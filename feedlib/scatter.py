@@ -170,8 +170,8 @@ def renormalised(s: ComplexArray, from_ohm: Array, to_ohm: float) -> ComplexArra
         return s
     d = 2 * np.sqrt(from_ohm * to_ohm) / (from_ohm + to_ohm)
     eye = np.eye(g.size)[..., None]
-    minus: ComplexArray = s - g[:, None, None] * eye
-    under: ComplexArray = eye - g[:, None, None] * s
+    minus = np.asarray(s - g[:, None, None] * eye, complex)
+    under = np.asarray(eye - g[:, None, None] * s, complex)
     # X (1 - G S) = (S - G): solve the transposed system.
     turned = solve_stack(np.swapaxes(under, -3, -2), np.swapaxes(minus, -3, -2))
     return np.swapaxes(turned, -3, -2) * d[None, :, None] / d[:, None, None]

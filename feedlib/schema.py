@@ -12,7 +12,7 @@ import math
 import types
 import typing
 from collections.abc import Mapping
-from typing import Any, Literal, TypeVar
+from typing import Any, Literal, TypeVar, cast
 
 from feedlib.errors import FieldError, quoted
 
@@ -102,19 +102,24 @@ class Record:
 R = TypeVar("R", bound=Record)
 
 
-@functools.cache
-def specs(cls: type[Any]) -> Mapping[str, Spec]:
+def specs(cls: type[Record]) -> Mapping[str, Spec]:
     """The described fields of a record, in written order."""
+    found: Any = cls  # mypy takes a class of records for something that cannot be hashed
+    return _specs(found)
+
+
+@functools.cache
+def _specs(cls: Any) -> Mapping[str, Spec]:
     return {f.name: f.metadata["spec"] for f in dataclasses.fields(cls) if "spec" in f.metadata}
 
 
 @functools.cache
-def _types(cls: type[Any]) -> Mapping[str, Any]:
+def _types(cls: Any) -> Mapping[str, Any]:
     return typing.get_type_hints(cls)
 
 
 @functools.cache
-def _required(cls: type[Any]) -> frozenset[str]:
+def _required(cls: Any) -> frozenset[str]:
     return frozenset(
         f.name
         for f in dataclasses.fields(cls)
@@ -130,16 +135,18 @@ def read_record(cls: type[R], data: Json, where: str = "", skip: tuple[str, ...]
     if not isinstance(data, dict):
         raise FieldError(where, f"wants an object, got {_kind(data)}")
     prefix = f"{where}." if where else ""
+    fields, record = specs(cls), cast(Any, cls)
+    types, required = _types(record), _required(record)
     known: dict[str, Any] = {}
     extra: dict[str, Json] = {}
     for key, value in data.items():
-        if key in specs(cls):
-            known[key] = _value(_types(cls)[key], value, prefix + key)
+        if key in fields:
+            known[key] = _value(types[key], value, prefix + key)
         elif key not in skip:
             extra[key] = value
-    for name in specs(cls):
-        if name in _required(cls) and name not in known:
-            raise FieldError(prefix + name, f"is missing ({specs(cls)[name].label.lower()})")
+    for name, spec in fields.items():
+        if name in required and name not in known:
+            raise FieldError(prefix + name, f"is missing ({spec.label.lower()})")
     try:
         return cls(**known, extra=extra)
     except FieldError as error:
@@ -151,7 +158,7 @@ def record_json(record: Record) -> dict[str, Json]:
     out: dict[str, Json] = {}
     for name, spec in specs(type(record)).items():
         value = getattr(record, name)
-        if value is None or (spec.omit_default and value == default_of(type(record), name)):
+        if value is None or (spec.omit_default and value == default_of(cast(Any, type(record)), name)):
             continue
         out[name] = _json(value)
     out.update(record.extra)
@@ -159,7 +166,7 @@ def record_json(record: Record) -> dict[str, Json]:
 
 
 @functools.cache
-def default_of(cls: type[Any], name: str) -> Any:
+def default_of(cls: Any, name: str) -> Any:
     """The default of a field."""
     found = next(f for f in dataclasses.fields(cls) if f.name == name)
     return found.default_factory() if found.default_factory is not dataclasses.MISSING else found.default

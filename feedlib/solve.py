@@ -6,9 +6,9 @@ import numpy as np
 
 from feedlib.answer import Answer, Solved
 from feedlib.conventions import Array
-from feedlib.errors import SolveError
+from feedlib.errors import SolveError, quoted
 from feedlib.flows import drive_in_slices, line_values
-from feedlib.parts import Radio
+from feedlib.parts import Coax, Radio
 from feedlib.plan import Plan
 from feedlib.topology import Topology, compile_plan
 from feedlib.undetermined import refuse_undetermined
@@ -25,6 +25,7 @@ def solve(plan: Plan, topology: Topology | None = None) -> Answer:
     rest_hz = [band.marked_hz, band.start_hz, band.stop_hz, *(c.hz for c in plan.channels)]
     frequency_hz = np.concatenate([grid_hz, rest_hz])
     _refuse_uncovered(plan, frequency_hz)
+    _refuse_missing_cables(plan)
     if topology is None or not topology.fits(plan):
         topology = compile_plan(plan)
     if topology.has_loops:
@@ -43,6 +44,13 @@ def _only_radio(plan: Plan) -> Radio:
         raise SolveError("the plan has more than one radio; take all but one off", part=radios[1].id)
     assert isinstance(radios[0].part, Radio)
     return radios[0].part
+
+
+def _refuse_missing_cables(plan: Plan) -> None:
+    for placed in plan.parts:
+        if isinstance(placed.part, Coax) and placed.part.cable not in plan.cables:
+            cable = quoted(placed.part.cable)
+            raise SolveError(f"its cable {cable} is not in the plan; choose another or add it", part=placed.id)
 
 
 def _refuse_uncovered(plan: Plan, frequency_hz: Array) -> None:

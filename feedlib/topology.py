@@ -185,9 +185,9 @@ class _Compiler:
 
     def _single(self, element: Element, up: int) -> None:
         height, others = self.height, [edge for edge in element.edges if edge != up]
-        if not isinstance(self.plan.parts[element.part].part, Junction):
-            self.made.append((up, others))
         part = None if element.part == OPEN else self.plan.parts[element.part].part
+        if not isinstance(part, Junction):
+            self.made.append((up, others))
         if not others:
             self.ends.append((up, element.part))
             height[up], self.weight[up] = 0, 1

@@ -10,7 +10,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from feedlib.conventions import Array, ComplexArray, Index
-from feedlib.errors import FeedError
+from feedlib.errors import FeedError, quoted
 from feedlib.touchstone_syntax import (
     DataSets,
     Line,
@@ -75,7 +75,7 @@ def read_touchstone(text: str, name: str) -> NetworkData:
         read = _read_version_2 if lines[0][1].startswith("[") else _read_version_1
         return read(lines, ports_in_name)
     except Refusal as refusal:
-        raise TouchstoneError(f"{name}, line {refusal.line}: {refusal}") from None
+        raise TouchstoneError(f"{quoted(name)}, line {refusal.line}: {refusal}") from None
 
 
 def interpolate(data: NetworkData, frequency_hz: Array) -> ComplexArray:

@@ -35,7 +35,9 @@ class Around:
     def velocity_factor(self) -> float | None:
         """The velocity factor that the record has, itself or by its cable."""
         own = getattr(self.record, "velocity_factor", None)
-        return own if isinstance(own, float) else self.cable and self.cable.velocity_factor
+        if isinstance(own, float):
+            return own
+        return None if self.cable is None else self.cable.velocity_factor
 
     def beyond(self, number: int) -> str:
         """What the part's port is joined to, in words."""

@@ -8,7 +8,7 @@ from PySide6.QtCore import Qt, Signal
 from PySide6.QtGui import QKeyEvent, QMouseEvent
 from PySide6.QtWidgets import QFrame, QGridLayout, QHBoxLayout, QLabel, QVBoxLayout, QWidget
 
-from app.look import SIGNS, Look
+from app.look import SIGNS, Look, Verdict
 from app.panels.figures import Row
 from app.panels.style import plain_label, readable, set_text, tooltip
 from feedlib import Problem
@@ -69,9 +69,9 @@ class ProblemCard(QFrame):
         super().__init__()
         self.setProperty("role", "problem")
         self._leads = leads
-        state = "fails" if problem.stops else "near"
+        state: Verdict = "fails" if problem.stops else "near"
         text = f"{where}: {problem.text}" if where else problem.text
-        sign = plain_label(SIGNS["fails" if problem.stops else "near"], "strong")
+        sign = plain_label(SIGNS[state], "strong")
         sign.setWordWrap(False)
         sign.setFixedWidth(14)
         sign.setStyleSheet(f"color: {readable(look, look.verdict(state), look.fails_wash)}")
@@ -90,7 +90,8 @@ class ProblemCard(QFrame):
             self.setCursor(Qt.CursorShape.PointingHandCursor)
 
     def mouseReleaseEvent(self, event: QMouseEvent) -> None:
-        if self._leads and event.button() == Qt.MouseButton.LeftButton and self.rect().contains(event.position().toPoint()):
+        inside = self.rect().contains(event.position().toPoint())
+        if self._leads and inside and event.button() == Qt.MouseButton.LeftButton:
             self.clicked.emit()
 
     def keyPressEvent(self, event: QKeyEvent) -> None:

@@ -8,7 +8,8 @@ from PySide6.QtCore import Qt
 from PySide6.QtGui import QStandardItemModel
 
 from app.panels.around import Around
-from app.panels.editors import ChoiceBox, FieldEditor
+from app.panels.controls import ChoiceBox
+from app.panels.editors import FieldEditor
 from app.panels.shelf import by_impedance, caution, figures_text, offer
 from app.panels.style import tooltip
 from feedlib.catalogue import quality_sentence

@@ -9,8 +9,8 @@ from collections.abc import Mapping
 from typing import Any
 
 from PySide6.QtCore import Qt, Signal
-from PySide6.QtGui import QFocusEvent, QKeyEvent, QResizeEvent, QWheelEvent
-from PySide6.QtWidgets import QComboBox, QHBoxLayout, QLineEdit, QPlainTextEdit, QVBoxLayout, QWidget
+from PySide6.QtGui import QWheelEvent
+from PySide6.QtWidgets import QHBoxLayout, QVBoxLayout, QWidget
 
 from app.editing.entry import EntryError, read_complex_ohm, read_length_m, read_quantity
 from app.editing.wording import (
@@ -24,83 +24,12 @@ from app.editing.wording import (
 )
 from app.look import SIGNS
 from app.panels.around import Around
+from app.panels.controls import ChoiceBox, LineField, NoteField
 from app.panels.style import plain_label, set_text
 
 LABEL_WIDTH = 108
 NOTCH = 120
 """One notch of a wheel in Qt's eighths of a degree."""
-
-
-class LineField(QLineEdit):
-    """A line of text: `typed` once on Enter or when the focus leaves, `restored` on Esc."""
-
-    typed = Signal(str)
-    restored = Signal()
-
-    def __init__(self, name: str) -> None:
-        super().__init__()
-        self.setAccessibleName(name)
-        self._note = plain_label(role="soft")
-        self._note.setParent(self)
-        self._note.setWordWrap(False)
-        self._note.setAttribute(Qt.WidgetAttribute.WA_TransparentForMouseEvents)
-        self.editingFinished.connect(self._finished)
-
-    def show_text(self, text: str) -> None:
-        """Show what the plan has."""
-        if text != self.text():
-            self.setText(text)
-            self.setCursorPosition(0)
-        self.setModified(False)
-
-    def set_note(self, text: str) -> None:
-        """A soft word at the line's end, such as a unit."""
-        if text != self._note.text():
-            set_text(self._note, text)
-            self._place_note()
-
-    def resizeEvent(self, event: QResizeEvent) -> None:
-        super().resizeEvent(event)
-        self._place_note()
-
-    def keyPressEvent(self, event: QKeyEvent) -> None:
-        if event.key() == Qt.Key.Key_Escape:
-            self.restored.emit()
-        else:
-            super().keyPressEvent(event)
-
-    def _place_note(self) -> None:
-        self._note.ensurePolished()
-        width = self._note.sizeHint().width() if self._note.text() else 0
-        self._note.setVisible(0 < width < self.width() - 40)
-        self.setTextMargins(0, 0, width + 6 if self._note.isVisibleTo(self) else 0, 0)
-        self._note.setGeometry(self.width() - width - 7, 0, width, self.height())
-
-    def _finished(self) -> None:
-        if self.isModified():
-            self.setModified(False)
-            self.typed.emit(self.text())
-
-
-class ChoiceBox(QComboBox):
-    """A combo box that the wheel passes over, so that scrolling a sheet changes nothing."""
-
-    restored = Signal()
-
-    def __init__(self, name: str) -> None:
-        super().__init__()
-        self.setAccessibleName(name)
-        self.setSizeAdjustPolicy(QComboBox.SizeAdjustPolicy.AdjustToMinimumContentsLengthWithIcon)
-        self.setMinimumContentsLength(4)
-
-    def wheelEvent(self, event: QWheelEvent) -> None:
-        event.ignore()
-
-    def keyPressEvent(self, event: QKeyEvent) -> None:
-        if event.key() == Qt.Key.Key_Escape:
-            self.restored.emit()
-        else:
-            super().keyPressEvent(event)
 
 
 class Editor(QWidget):
@@ -176,7 +105,7 @@ class FieldEditor(Editor):
 
     def set_group(self, group: str) -> None:
         self._group = group
-        self.control.setAccessibleName(f"{group}, {self._name}" if group else self._name)
+        self.control.setAccessibleName(", ".join(filter(None, (group, self._name))))
 
     def rename(self, label: str) -> None:
         """Another label."""
@@ -358,7 +287,7 @@ class NoteEditor(FieldEditor):
     """Lines of free text."""
 
     def __init__(self, label: str) -> None:
-        self.text = _NoteField()
+        self.text = NoteField()
         super().__init__(label, self.text, wide=True)
         self.text.setAccessibleName(label)
         self.text.typed.connect(self._enter)
@@ -372,27 +301,3 @@ class NoteEditor(FieldEditor):
     @property
     def being_typed(self) -> bool:
         return self.text.hasFocus() and self.text.document().isModified()
-
-
-class _NoteField(QPlainTextEdit):
-    """Text of a few lines: `typed` when the focus leaves it, `restored` on Esc."""
-
-    typed = Signal(str)
-    restored = Signal()
-
-    def __init__(self) -> None:
-        super().__init__()
-        self.setTabChangesFocus(True)
-        self.setFixedHeight(58)
-
-    def keyPressEvent(self, event: QKeyEvent) -> None:
-        if event.key() == Qt.Key.Key_Escape:
-            self.restored.emit()
-        else:
-            super().keyPressEvent(event)
-
-    def focusOutEvent(self, event: QFocusEvent) -> None:
-        super().focusOutEvent(event)
-        if self.document().isModified() and event.reason() != Qt.FocusReason.PopupFocusReason:
-            self.document().setModified(False)
-            self.typed.emit(self.toPlainText())

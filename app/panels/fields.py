@@ -6,6 +6,7 @@ import functools
 import types
 import typing
 from collections.abc import Callable, Mapping
+from dataclasses import replace
 from typing import Any, Literal
 
 from app.panels.around import Around
@@ -49,10 +50,12 @@ def editor_for(name: str, hint: Any, spec: Spec) -> Editor:
     if hint is TouchstoneText:
         return FileEditor(spec.label)
     if isinstance(hint, type) and issubclass(hint, Record):
-        return _optional(spec.label, hint) if optional else RecordEditor(spec.label, form_for(hint))
+        return optional_editor(spec.label, hint) if optional else RecordEditor(spec.label, form_for(hint))
     if name in _NAMED:
         return _NAMED[name](spec.label)
-    look = {"optional": optional, "hint": spec.hint[:1].upper() + spec.hint[1:]}
+    look: dict[str, Any] = {"optional": optional, "hint": spec.hint[:1].upper() + spec.hint[1:]}
+    if optional:
+        look["placeholder"] = "none"
     if hint is float:
         return LengthEditor(spec.label, **look) if spec.unit == "m" else QuantityEditor(spec.label, spec.unit, **look)
     return _SCALARS[hint](spec.label, **look)
@@ -86,14 +89,15 @@ class WayEditor(ChosenEditor):
         spec = specs(AntennaImpedance)[which]
         # None says "given in another way" here, so no field of a way may be left empty.
         bare = typing.get_args(_hints(AntennaImpedance)[which])[0]
-        return editor_for(which, bare, spec)
+        return editor_for(which, bare, replace(spec, label="") if which == "fixed_ohm" else spec)
 
 
 def _entry(hint: Any) -> ChosenEditor:
-    return _optional("", next(a for a in typing.get_args(hint) if a is not type(None)))
+    return optional_editor("", next(a for a in typing.get_args(hint) if a is not type(None)))
 
 
-def _optional(label: str, cls: type[Record]) -> OptionalEditor:
+def optional_editor(label: str, cls: type[Record]) -> OptionalEditor:
+    """The editor of a record that may be there or not."""
     words, starter = _OPTIONAL[cls]
     return OptionalEditor(label, words, make=functools.partial(form_for, cls), starter=starter)
 
@@ -112,8 +116,8 @@ def _first_sweep(around: Around) -> Sweep:
 
 
 _OPTIONAL: dict[type[Record], tuple[str, Callable[[Around], Record]]] = {
-    CoaxEnd: ("a further section", _first_end),
-    Sweep: ("wider than the band", _first_sweep),
+    CoaxEnd: ("a section", _first_end),
+    Sweep: ("wider", _first_sweep),
 }
 """Records that may be there or not: the word for "there", and how each begins."""
 
@@ -123,6 +127,5 @@ _NAMED: Mapping[str, Callable[[str], Editor]] = {"cable": CableEditor}
 _SCALARS: Mapping[Any, Callable[..., Editor]] = {int: WholeEditor, complex: ImpedanceEditor, str: TextEditor}
 
 
-@functools.cache
 def _hints(cls: type[Record]) -> Mapping[str, Any]:
     return typing.get_type_hints(cls)

@@ -13,7 +13,6 @@ from app.editing.wording import (
     format_current,
     format_db,
     format_impedance,
-    format_power,
     format_share,
     format_voltage,
 )
@@ -154,11 +153,6 @@ def _vswr(return_loss_db: float) -> str:
         return "—" if math.isnan(gamma) else "∞"
     vswr = (1 + gamma) / (1 - gamma)
     return f"{vswr:.2f}" if vswr < 10 else f"{vswr:.4g}"
-
-
-def power_text(power_w: float) -> str:
-    """A power and its level."""
-    return f"{format_power(power_w)} · {10 * math.log10(power_w) + 30:.1f} dBm".replace("-", "−")
 
 
 _SPECIAL: dict[type[Part], Callable[[Answer, Placed], list[Row]]] = {Radio: _radio, Antenna: _antenna, Coax: _coax}

@@ -19,6 +19,7 @@ from app.look import SIGNS
 from app.panels.around import Around
 from app.panels.editors import ChoiceEditor, Editor
 from app.panels.style import plain_label, set_text
+from app.panels.tab_order import tab_through
 from feedlib.errors import FieldError, PlanError
 from feedlib.schema import Record, specs
 
@@ -209,6 +210,7 @@ class ChosenEditor(Editor):
             editor.set_group(_named(self._group, self._label))
             editor.entered.connect(partial(self._entered, which))
             self._layout.addWidget(editor)
+            tab_through(self.choice.control, editor)
         for name, editor in self._editors.items():
             editor.setVisible(name == which)
         if which is not None:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from itertools import groupby
+from typing import Any
 
 from app.editing import edits
 from app.editing.wording import editable_quantity, format_db, format_frequency
@@ -47,7 +48,7 @@ def caution(name: str, cable: Cable) -> str:
     known = catalogue_type(name)
     if known is None:
         return ""
-    if not known.offered or Cable(**figures(known)) != cable:
+    if _kept(known) != cable:
         return "These are not the catalogue's figures."
     return quality_sentence(known)
 
@@ -55,6 +56,13 @@ def caution(name: str, cable: Cable) -> str:
 def stocked(plan: Plan, name: str | None) -> Plan:
     """The plan with a cable of that name, taken from the catalogue if it is not in the plan."""
     known = catalogue_type(name) if name is not None and name not in plan.cables else None
-    if known is None or not known.offered:
-        return plan
-    return edits.with_cable(plan, known.type, Cable(**figures(known)))
+    cable = None if known is None else _kept(known)
+    return plan if name is None or cable is None else edits.with_cable(plan, name, cable)
+
+
+def _kept(known: CatalogueCable) -> Cable | None:
+    """What a plan keeps of a type, or None where the type is not offered."""
+    if not known.offered:
+        return None
+    kept: dict[str, Any] = figures(known)
+    return Cable(**kept)

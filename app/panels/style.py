@@ -16,7 +16,7 @@ SHEET_WIDTH = 280
 MARGIN = 16
 LEAST_CONTRAST = 4.5
 
-Role = Literal["text", "soft", "strong", "head", "title", "fault"]
+Role = Literal["text", "small", "soft", "strong", "head", "title", "fault"]
 
 _LONG_WORD = re.compile(r"\S{24}(?=\S)")
 
@@ -83,6 +83,7 @@ QWidget {{ color: {look.ink}; font-size: {SIZES["text"]}px; }}
 QWidget[role="card"] {{ background: {look.card}; }}
 QLabel {{ background: transparent; }}
 QLabel[role="soft"] {{ color: {look.soft}; font-size: {SIZES["small"]}px; }}
+QLabel[role="small"] {{ font-size: {SIZES["small"]}px; }}
 QLabel[role="strong"] {{ font-weight: bold; }}
 QLabel[role="head"] {{ font-size: {SIZES["head"]}px; font-weight: bold; }}
 QLabel[role="title"] {{ font-size: {SIZES["title"]}px; font-weight: bold; }}
@@ -92,15 +93,16 @@ QLineEdit, QPlainTextEdit, QComboBox {{
     selection-background-color: {look.impedance[1]}; selection-color: {look.card};
 }}
 QLineEdit, QComboBox {{ min-height: 20px; }}
-QComboBox {{ combobox-popup: 0; padding-right: 2px; }}
+QLineEdit, QPlainTextEdit {{ placeholder-text-color: {look.soft}; }}
+QComboBox {{ combobox-popup: 0; padding: 2px 2px 2px 8px; }}
+QComboBox::drop-down {{ border: none; width: 20px; }}
 QLineEdit:focus, QPlainTextEdit:focus, QComboBox:focus {{ border-color: {look.ink}; }}
 QLineEdit[bad="true"], QComboBox[bad="true"] {{ border-color: {look.fails}; }}
-QLineEdit[role="title"] {{
-    background: transparent; border-color: transparent; font-size: {SIZES["title"]}px; font-weight: bold;
-    padding: 2px 4px; margin-left: -5px;
+QLineEdit[role="name"] {{
+    background: transparent; border-color: transparent; font-size: {SIZES["head"]}px; font-weight: bold; padding: 2px 0;
 }}
-QLineEdit[role="title"]:hover {{ border-color: {look.hairline}; }}
-QLineEdit[role="title"]:focus {{ background: {look.field}; border-color: {look.ink}; }}
+QLineEdit[role="name"]:hover {{ border-color: {look.hairline}; }}
+QLineEdit[role="name"]:focus {{ background: {look.field}; border-color: {look.ink}; }}
 QComboBox QAbstractItemView {{
     background: {look.card}; color: {look.ink}; border: 1px solid {look.hairline};
     selection-background-color: {look.band_wash}; selection-color: {look.ink};
@@ -110,7 +112,8 @@ QMenu::item {{ padding: 4px 20px 4px 12px; }}
 QMenu::item:selected {{ background: {look.band_wash}; }}
 QMenu::item:disabled {{ color: {look.soft}; }}
 QPushButton {{
-    background: {look.field}; border: 1px solid {look.hairline}; border-radius: 4px; padding: 3px 10px; min-height: 18px;
+    background: {look.field}; border: 1px solid {look.hairline}; border-radius: 4px;
+    padding: 3px 10px; min-height: 18px;
 }}
 QPushButton:hover {{ border-color: {look.soft}; }}
 QPushButton:focus {{ border-color: {look.ink}; }}
@@ -118,6 +121,9 @@ QPushButton[role="bare"] {{
     background: transparent; border-color: transparent; text-align: left; padding: 2px 0; font-weight: bold;
 }}
 QPushButton[role="bare"]:focus {{ border-color: {look.ink}; }}
+QPushButton[role="icon"] {{ background: transparent; border-color: transparent; padding: 1px 4px; }}
+QPushButton[role="icon"]:hover {{ border-color: {look.hairline}; }}
+QPushButton[role="icon"]:focus {{ border-color: {look.ink}; }}
 QFrame[role="problem"] {{ background: {look.fails_wash}; border: 1px solid transparent; border-radius: 6px; }}
 QFrame[role="problem"]:focus {{ border-color: {look.ink}; }}
 QFrame[role="rule"] {{ background: {look.hairline}; border: none; max-height: 1px; min-height: 1px; }}

@@ -1,3 +1,5 @@
+# mypy: disable-error-code="no-untyped-call"
+# The Qt surfaces of matplotlib carry no types.
 """The surface of a plot: drawn only in paint events, whole when what stands still has changed, else only what moves.
 
 Must not know what is drawn. A hidden surface gets no paint events, so a hidden plot costs nothing; several changes in
@@ -59,7 +61,7 @@ class Canvas(FigureCanvasQTAgg):
     def __init__(self, drawing: Drawing) -> None:
         self._drawing = drawing
         self._whole = self._moved = True
-        self._background: Any = None
+        self.background: Any = None
         super().__init__(Figure(dpi=DPI))
 
     @property
@@ -92,9 +94,9 @@ class Canvas(FigureCanvasQTAgg):
             self.renderer = self.get_renderer()
             self.renderer.clear()
             self.figure.draw(self.renderer)
-            self._background = self.copy_from_bbox(self.figure.bbox)
+            self.background = self.copy_from_bbox(self.figure.bbox)
         elif self._moved:
-            self.restore_region(self._background)
+            self.restore_region(self.background)
         if self._whole or self._moved:
             for artist in self._drawing.moving():
                 self.figure.draw_artist(artist)

@@ -20,9 +20,9 @@ SETTLED_MS = 150
 
 
 class Plot(QWidget):
-    """One plot. A kind of plot says what it shows in `fill`, `artists`, `arrange` and `recolour`.
+    """One plot. A kind of plot says what it shows in `build`, `fill`, `artists`, `arrange` and `recolour`.
 
-    whole_asked : the person wants the plot to take the whole row, or to give it back.
+    pointer : where it is on the surface. whole_asked : the plot shall have the whole row, or give it back.
     """
 
     whole_asked = Signal()
@@ -32,7 +32,7 @@ class Plot(QWidget):
         self.store, self.look, self.title = store, look, title
         self.word = words[0] if words else ""
         self._behind = True
-        self._pointer: Pixel | None = None
+        self.pointer: Pixel | None = None
         self._dragging = False
         self._hovering: str | None = None
         self.canvas = Canvas(self)
@@ -46,9 +46,15 @@ class Plot(QWidget):
         self._settle.setInterval(SETTLED_MS)
         self._settle.timeout.connect(self._settled)
         self._build_header(words)
+        self.build()
+        self._wear()
         self._listen()
 
     # What a kind of plot says
+
+    def build(self) -> None:
+        """Make the artists."""
+        raise NotImplementedError
 
     def fill(self, plan: Plan, answer: Answer | None, *, settled: bool) -> bool:
         """Put the answer into the artists (none: empty them); whether what stands still has changed.
@@ -77,8 +83,12 @@ class Plot(QWidget):
         """The lines of the readout at a point (device pixels); none where there is nothing to read."""
         return []
 
-    def drag_to(self, x: float) -> None:
-        """The person has pressed at, or dragged to, that place (device pixels) beside any curve."""
+    def may_drag(self, at: Pixel) -> bool:
+        """Whether a press there, beside any curve, begins a drag."""
+        return False
+
+    def drag_to(self, at: Pixel) -> None:
+        """Someone drags to that place."""
 
     # What every plot does
 
@@ -111,13 +121,12 @@ class Plot(QWidget):
             yield self.message
             return
         yield from self.artists()
-        if self._pointer is not None and (lines := self.read_at(self._pointer)):
-            yield self.readout.beside(self._pointer, lines, self.canvas.scale)
+        if self.pointer is not None and (lines := self.read_at(self.pointer)):
+            yield self.readout.beside(self.pointer, lines, self.canvas.scale)
 
-    @property
-    def pointer(self) -> Pixel | None:
-        """Where the pointer is on the surface (device pixels)."""
-        return self._pointer
+    def names(self) -> dict[str, str]:
+        """What people call the parts now, by id; the answer may still know a part by an older id."""
+        return {placed.id: placed.name for placed in self.store.plan.parts}
 
     def nothing_to_show(self, why: str | None) -> None:
         """Say in the middle of the plot why it is empty; None: it is not."""
@@ -128,15 +137,15 @@ class Plot(QWidget):
         part_id = self.part_at(at)
         if part_id is not None:
             self.store.select((part_id,))
-        else:
+        elif self.may_drag(at):
             self._dragging = True
-            self.drag_to(at[0])
+            self.drag_to(at)
 
     def moved(self, at: Pixel) -> None:
         """The pointer is there: drag, or hover over the part whose curve is there."""
-        self._pointer = at
+        self.pointer = at
         if self._dragging:
-            self.drag_to(at[0])
+            self.drag_to(at)
         else:
             self._hover(self.part_at(at))
         self.canvas.refresh()
@@ -147,7 +156,7 @@ class Plot(QWidget):
 
     def left(self) -> None:
         """The pointer is gone."""
-        self._pointer = None
+        self.pointer = None
         self._hover(None)
         self.canvas.refresh()
 
@@ -199,6 +208,7 @@ class Plot(QWidget):
         self.note.setPalette(palette)
         self.figure.set_facecolor(self.look.paper)
         self.message.set_color(self.look.soft)
+        self.message.set_bbox({"facecolor": self.look.paper, "edgecolor": "none"})
         self.readout.recolour(self.look)
         self.recolour()
         self._behind = True

@@ -1,251 +1,88 @@
-"""Axes over frequency: curves with their names at the ends, the band, no-go bands and the mark; must not know the store.
-
-What stands still (axes, grid, bands) is a `Ground` and is drawn with the whole figure; curves, names, dots and the
-mark move.
-"""
+"""What the plots over frequency share: axes that follow the answer, and a mark that moves where someone points."""
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Sequence
-from dataclasses import dataclass
+from collections.abc import Iterable
 
 import numpy as np
 from matplotlib.artist import Artist
-from matplotlib.axes import Axes
-from matplotlib.figure import Figure
-from matplotlib.lines import Line2D
-from matplotlib.patches import Rectangle
-from matplotlib.transforms import IdentityTransform
 
-from app.look import Look, blend
-from app.plots import ink
-from app.plots.canvas import DPI, Pixel
-from app.plots.placing import distances, pushed_apart
-from app.plots.scale import Range, frequency_ticks, pointed_hz, ticks
-from feedlib import Plan
+from app.editing import edits
+from app.editing.wording import format_frequency
+from app.plots.axes import Curve, FrequencyAxes, ground_of, names_px
+from app.plots.canvas import Pixel
+from app.plots.figure import Plot
+from app.plots.scale import Range, followed
+from feedlib import Answer, Plan
 from feedlib.conventions import Array
 
-LEFT_PX, TOP_PX, BOTTOM_PX = 46.0, 10.0, 26.0
-RIGHT_PX, RIGHT_WITH_NAMES_PX = 30.0, 92.0
-NAME_AWAY_PX, NAME_GAP_PX, NEAR_PX = 9.0, 15.0, 6.0
-SLIVER = 0.01
-"""Share of the axis that a band of one frequency is drawn with."""
 
+class FrequencyPlot(Plot):
+    """Curves over frequency. A kind of plot says which curves, what the limits allow, and how far the axis reaches.
 
-@dataclass(frozen=True, slots=True)
-class Curve:
-    """What one curve shows. values : (F,); at_mark : solved at the mark; note : written beside its dot there."""
+    EMPTY : why there is no curve although there is an answer.
+    """
 
-    part_id: str
-    name: str
-    colour: str
-    values: Array
-    at_mark: float
-    note: str = ""
-    stands_out: bool = False
+    EMPTY = ""
 
+    def unit(self) -> str:
+        """What the figures are, for the header."""
+        raise NotImplementedError
 
-@dataclass(frozen=True, slots=True)
-class Ground:
-    """What stands still. allowed : the limits, infinite where there is none; shown : the ends of the other axis."""
+    def curves(self, answer: Answer) -> tuple[Curve, ...]:
+        """What is drawn."""
+        raise NotImplementedError
 
-    swept_hz: Range
-    band_hz: Range
-    allowed: Range
-    shown: Range
-    named: bool
+    def allowed(self, plan: Plan) -> Range:
+        """The values that the limits allow; infinite ends where nothing is asked."""
+        raise NotImplementedError
 
-    @property
-    def frequencies_hz(self) -> Range:
-        """The ends of the frequency axis; one frequency alone gets some room."""
-        low, high = self.swept_hz
-        return self.swept_hz if high > low else Range(low * 0.999, high * 1.001)
+    def reach(self, values: Array, allowed: Range) -> tuple[Range, float]:
+        """What the axis wants to show, and where its steps are counted from; values : finite, of any number."""
+        raise NotImplementedError
 
+    def value_texts(self, at: int) -> list[str]:
+        """What the readout says of the curves at a solved frequency, a line each."""
+        raise NotImplementedError
 
-def ground_of(plan: Plan, allowed: Range, shown: Range, *, named: bool = False) -> Ground:
-    """The ground for a plan."""
-    wide = plan.sweep or plan.band
-    band = Range(plan.band.start_hz, plan.band.stop_hz)
-    return Ground(Range(wide.start_hz, wide.stop_hz), band, allowed, shown, named)
+    def build(self) -> None:
+        self.axes = FrequencyAxes(self.figure, self.look)
+        self._shown: dict[str, Range] = {}
 
+    def fill(self, plan: Plan, answer: Answer | None, *, settled: bool) -> bool:
+        self.note.setText(self.unit())
+        curves = () if answer is None else self.curves(answer)
+        if answer is not None and not curves:
+            self.nothing_to_show(self.EMPTY)
+        self.axes.set_curves(np.zeros(0) if answer is None else answer.frequency_hz, plan.band.marked_hz, curves)
+        allowed = self.allowed(plan)
+        values = np.array([curve.values for curve in curves])
+        wanted, base = self.reach(values[np.isfinite(values)], allowed)
+        shown = followed(self._shown.get(self.word), wanted, base=base, settled=settled)
+        self._shown[self.word] = shown
+        return self.axes.set_ground(ground_of(plan, allowed, shown, names_px=names_px(curves)))
 
-class Strand:
-    """The artists of one curve: its line, its dot at the mark with a note, and its name at the end."""
-
-    def __init__(self, figure: Figure, axes: Axes) -> None:
-        self.line, self.dot = (axes.add_line(Line2D([], [], animated=True)) for _ in range(2))
-        self.dot.set(marker="o", markersize=ink.DOT_POINTS)
-        self.name, self.note = ink.free_text(figure), ink.free_text(figure)
-        self.name.set(va="center_baseline")
-
-
-class FrequencyAxes:
-    """One pair of axes over frequency."""
-
-    def __init__(self, figure: Figure) -> None:
-        self.axes = figure.add_axes((0.1, 0.1, 0.8, 0.8))
-        self.axes.set_axisbelow(True)
-        self.axes.spines[:].set_visible(False)
-        self.axes.tick_params(length=0, labelsize=ink.TEXT_POINTS, pad=4)
-        self._figure = figure
-        self._wash = self.axes.add_patch(Rectangle((0, 0), 0, 0, linewidth=0, zorder=0.1))
-        self._no_go = [
-            self.axes.add_patch(Rectangle((0, 0), 0, 0, linewidth=0, zorder=0.2, hatch="////")) for _ in range(2)
-        ]
-        self.mark, self._hair = (
-            self.axes.add_line(Line2D([], [], animated=True, linewidth=points))
-            for points in (ink.MARK_POINTS, ink.THIN_POINTS)
-        )
-        self._leaders = Line2D([], [], animated=True, linewidth=ink.THIN_POINTS, transform=IdentityTransform())
-        figure.add_artist(self._leaders)
-        self._strands: list[Strand] = []
-        self.curves: tuple[Curve, ...] = ()
-        self._grid_hz: Array = np.zeros(0)
-        self._ground: Ground | None = None
-        self._names_at: dict[str, float] = {}
-
-    @property
-    def _scale(self) -> float:
-        return self._figure.dpi / DPI
-
-    def set_look(self, look: Look) -> None:
-        """Wear a look; curves bring their own colours."""
-        self.axes.set_facecolor(look.paper)
-        self.axes.tick_params(colors=look.soft)
-        self.axes.grid(True, color=look.hairline, linewidth=ink.THIN_POINTS)
-        self._wash.set_facecolor(look.band_wash)
-        for patch in self._no_go:
-            patch.set(facecolor=look.fails_wash, edgecolor=blend(look.fails_wash, look.fails, 0.35))
-        self.mark.set_color(look.ink)
-        self._hair.set_color(look.soft)
-        self._leaders.set_color(look.soft)
-
-    def set_ground(self, ground: Ground) -> bool:
-        """Whether it is another one than before."""
-        if ground == self._ground:
-            return False
-        self._ground = ground
-        across, shown = ground.frequencies_hz, ground.shown
-        self.axes.set_xlim(*across)
-        self.axes.set_ylim(*shown)
-        width = max(ground.band_hz.span, SLIVER * across.span)
-        left = min(ground.band_hz.low, across.high - width)
-        below, above = (min(max(end, shown.low), shown.high) for end in ground.allowed)
-        self._wash.set_bounds(left, shown.low, width if ground.band_hz != ground.swept_hz else 0.0, shown.span)
-        self._no_go[0].set_bounds(left, shown.low, width, below - shown.low)
-        self._no_go[1].set_bounds(left, above, width, shown.high - above)
-        return True
-
-    def set_curves(self, grid_hz: Array, mark_hz: float, curves: Sequence[Curve]) -> None:
-        """Show these curves; grid_hz : (F,) the frequencies of their values."""
-        self.curves, self._grid_hz = tuple(curves), grid_hz
-        self.mark.set_data([mark_hz, mark_hz], [0, 1])
-        self.mark.set_transform(self.axes.get_xaxis_transform())
-        while len(self._strands) < len(curves):
-            self._strands.append(Strand(self._figure, self.axes))
-        for strand, curve in zip(self._strands, curves, strict=False):
-            strand.line.set_data(grid_hz, curve.values)
-            strand.line.set_color(curve.colour)
-            strand.line.set_linewidth(ink.STANDS_OUT_POINTS if curve.stands_out else ink.LINE_POINTS)
-            strand.line.set_marker("o" if grid_hz.size == 1 else "")
-            strand.dot.set_data([mark_hz], [curve.at_mark])
-            strand.dot.set_color(curve.colour)
-            for text, words in ((strand.name, curve.name), (strand.note, curve.note)):
-                text.set_text(words)
-                text.set_color(curve.colour)
+    def artists(self) -> Iterable[Artist]:
+        return self.axes.artists(self.pointer)
 
     def arrange(self, width_px: float, height_px: float) -> None:
-        """Place the axes in a figure of that size and choose ticks that have room."""
-        assert self._ground is not None
-        right_px = RIGHT_WITH_NAMES_PX if self._ground.named else RIGHT_PX
-        across_px, up_px = max(width_px - LEFT_PX - right_px, 10.0), max(height_px - TOP_PX - BOTTOM_PX, 10.0)
-        self.axes.set_position(
-            (LEFT_PX / width_px, BOTTOM_PX / height_px, across_px / width_px, up_px / height_px)
-        )
-        self.axes.set_xticks(*frequency_ticks(self._ground.frequencies_hz, max(1, int(across_px / 62))))
-        self.axes.set_yticks(*ticks(self._ground.shown, max(1, int(up_px / 34))))
+        self.axes.arrange(width_px, height_px)
 
-    def artists(self, pointer: Pixel | None) -> Iterable[Artist]:
-        """What moves, in the order in which it is drawn."""
-        at = None if pointer is None else self.index_at(pointer)
-        if at is not None:
-            self._hair.set_data([self._grid_hz[at]] * 2, [0, 1])
-            yield self._hair
-        yield self.mark
-        strands = sorted(zip(self._strands, self.curves, strict=False), key=lambda pair: pair[1].stands_out)
-        for strand, _ in strands:
-            yield strand.line
-            yield strand.dot
-        yield from self._placed_names()
-        for strand, curve in strands:
-            if curve.note and np.isfinite(curve.at_mark):
-                yield self._placed_note(strand, curve)
-
-    def index_at(self, at: Pixel) -> int | None:
-        """The solved frequency nearest to a point; None outside the axes."""
-        if not self._grid_hz.size or not self.axes.bbox.contains(*at):
-            return None
-        return int(np.argmin(np.abs(self._x_px(self._grid_hz) - at[0])))
+    def recolour(self) -> None:
+        self.axes.set_look(self.look)
 
     def part_at(self, at: Pixel) -> str | None:
-        """The part whose curve, or name, is at a point."""
-        near = NEAR_PX * self._scale
-        if at[0] > self.axes.bbox.x1:
-            found = min(self._names_at.items(), key=lambda item: abs(item[1] - at[1]), default=None)
-            return found[0] if found and abs(found[1] - at[1]) <= NAME_GAP_PX * self._scale / 2 else None
-        if not self.curves or not self.axes.bbox.padded(near).contains(*at):
-            return None
-        x_px = self._x_px(self._grid_hz)
-        first, last = np.searchsorted(x_px, [at[0] - near, at[0] + near])
-        around = slice(max(0, first - 1), last + 1)
-        y_px = self._y_px(np.array([curve.values[around] for curve in self.curves]))
-        apart = distances(x_px[around], y_px, at)
-        nearest = int(np.argmin(apart))
-        return self.curves[nearest].part_id if apart[nearest] <= near else None
+        return self.axes.part_at(at)
 
-    def frequency_at(self, x: float) -> float:
-        """The round frequency that someone means who points there; the nearest one that is swept outside the axes."""
-        assert self._ground is not None
-        across, box = self._ground.frequencies_hz, self.axes.bbox
-        pixel_hz = across.span / box.width * self._scale
-        return pointed_hz(across.low + (x - box.x0) / box.width * across.span, pixel_hz, self._ground.swept_hz)
+    def read_at(self, at: Pixel) -> list[str]:
+        index = self.axes.index_at(at)
+        if index is None:
+            return []
+        return [format_frequency(float(self.axes.grid_hz[index])), *self.value_texts(index)]
 
-    def _x_px(self, frequency_hz: Array) -> Array:
-        low, high = self.axes.get_xlim()
-        return self.axes.bbox.x0 + (frequency_hz - low) / (high - low) * self.axes.bbox.width
+    def may_drag(self, at: Pixel) -> bool:
+        return self.axes.index_at(at) is not None
 
-    def _y_px(self, value: Array) -> Array:
-        low, high = self.axes.get_ylim()
-        return self.axes.bbox.y0 + (value - low) / (high - low) * self.axes.bbox.height
-
-    def _placed_names(self) -> Iterable[Artist]:
-        """The names at the ends of their curves, pushed apart, with leaders where they had to move."""
-        box, scale = self.axes.bbox, self._scale
-        named = [
-            (strand.name, curve, np.flatnonzero(np.isfinite(curve.values))[-1:])
-            for strand, curve in zip(self._strands, self.curves, strict=False)
-            if curve.name
-        ]
-        named = [entry for entry in named if entry[2].size]
-        ends = [float(np.clip(self._y_px(curve.values[last]), box.y0, box.y1)[0]) for _, curve, last in named]
-        places = pushed_apart(ends, NAME_GAP_PX * scale, box.y0, box.y1)
-        self._names_at = {curve.part_id: place for (_, curve, _), place in zip(named, places, strict=True)}
-        leaders = [(end, place) for end, place in zip(ends, places, strict=True) if abs(end - place) > scale]
-        self._leaders.set_data(
-            [x for _ in leaders for x in (box.x1 + scale, box.x1 + (NAME_AWAY_PX - 2) * scale, np.nan)],
-            [y for leader in leaders for y in (*leader, np.nan)],
-        )
-        yield self._leaders
-        for (text, _, _), place in zip(named, places, strict=True):
-            text.set_position((box.x1 + NAME_AWAY_PX * scale, place))
-            yield text
-
-    def _placed_note(self, strand: Strand, curve: Curve) -> Artist:
-        """The note above and right of the dot, on the other sides where it would leave the axes."""
-        box, away = self.axes.bbox, 7 * self._scale
-        mark_hz = np.asarray(strand.dot.get_xdata())
-        x, y = float(self._x_px(mark_hz)[0]), float(self._y_px(np.array([curve.at_mark]))[0])
-        right, up = x + 6 * away < box.x1, y + 3 * away < box.y1
-        strand.note.set(ha="left" if right else "right", va="bottom" if up else "top")
-        strand.note.set_position((x + away if right else x - away, y + away / 2 if up else y - away / 2))
-        return strand.note
+    def drag_to(self, at: Pixel) -> None:
+        moved = edits.marked(self.store.plan, self.axes.frequency_at(at[0]))
+        self.store.edit("Move the mark", moved, merge="mark")

@@ -21,9 +21,7 @@ LONGEST_NAME = 12
 
 def free_text(figure: Figure, text: str = "") -> Text:
     """A text that moves, placed in device pixels."""
-    return figure.text(
-        0, 0, text, fontsize=TEXT_POINTS, transform=IdentityTransform(), animated=True, parse_math=False
-    )
+    return figure.text(0, 0, text, fontsize=TEXT_POINTS, transform=IdentityTransform(), animated=True, parse_math=False)
 
 
 def short_name(name: str) -> str:

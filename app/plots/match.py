@@ -2,46 +2,73 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+import math
 
 import numpy as np
-from matplotlib.artist import Artist
 
-from app.editing import edits
-from app.editing.wording import format_frequency
+from app.editing.wording import format_db
 from app.look import Look
-from app.plots.canvas import Pixel
-from app.plots.figure import Plot
-from app.plots.frequency import Curve, FrequencyAxes, ground_of
-from app.plots.scale import Range, followed
+from app.plots.axes import Curve
+from app.plots.frequency import FrequencyPlot
+from app.plots.scale import Range
 from app.store import Store
 from feedlib import Answer, Figures, Plan
 from feedlib.conventions import Array
 
 RETURN_LOSS, VSWR = "return loss", "VSWR"
-HIGHEST = {RETURN_LOSS: 60.0, VSWR: 20.0}
-"""What is beyond, up to a perfect or to no match at all, is drawn there."""
+HIGHEST_DB, HIGHEST_VSWR = 60.0, 20.0
+"""What is beyond, up to a perfect match or none at all, is drawn there."""
 
 
-class MatchPlot(Plot):
+class MatchPlot(FrequencyPlot):
     """Return loss (dB) or VSWR at the radio, with the plan's limit."""
 
     def __init__(self, store: Store, look: Look) -> None:
         super().__init__(store, look, title="Match", words=(RETURN_LOSS, VSWR))
-        self.axes = FrequencyAxes(self.figure)
-        self._shown: dict[str, Range] = {}
-        self._wear()
 
-    def fill(self, plan: Plan, answer: Answer | None, *, settled: bool) -> bool:
-        self.note.setText("dB at the radio" if self.word == RETURN_LOSS else "at the radio")
-        limit = self._of_return_loss(plan.limits.return_loss_db)
-        curves: tuple[Curve, ...] = ()
-        if answer is not None:
-            at_mark = float(self._values(answer.mark)[0])
-            curves = (
-                Curve("", "", self.look.impedance[1], self._drawn(self._values(answer)), self._drawn(at_mark), self._text(at_mark)),
-            )
-            self.axes.set_curves(answer.frequency_hz, plan.band.marked_hz, curves)
-        else:
-            self.axes.set_curves(np.zeros(0), plan.band.marked_hz, ())
-'''
+    def unit(self) -> str:
+        return "dB at the radio" if self.word == RETURN_LOSS else "at the radio"
+
+    def curves(self, answer: Answer) -> tuple[Curve, ...]:
+        self._values = self._figure(answer)
+        at_mark = self._figure(answer.mark)
+        drawn, dot = (np.clip(values, -HIGHEST_DB, self._highest) for values in (self._values, at_mark))
+        note = self._text(float(at_mark[0])).removesuffix(" dB")
+        return (Curve(None, "", self.look.impedance[1], drawn, float(dot[0]), note),)
+
+    def allowed(self, plan: Plan) -> Range:
+        limit_db = plan.limits.return_loss_db
+        if limit_db is None:
+            return Range(-math.inf, math.inf)
+        if self.word == RETURN_LOSS:
+            return Range(limit_db, math.inf)
+        return Range(-math.inf, float(vswr(10 ** (-limit_db / 10))))
+
+    def reach(self, values: Array, allowed: Range) -> tuple[Range, float]:
+        limits = [end for end in allowed if math.isfinite(end)]
+        base, least = (0.0, 10.0) if self.word == RETURN_LOSS else (1.0, 1.2)
+        highest = min(max([least, *limits, values.max(initial=base)]), self._highest)
+        return Range(values.min(initial=base), base + 1.04 * (highest - base)), base
+
+    def value_texts(self, at: int) -> list[str]:
+        return [self._text(float(self._values[at]))]
+
+    @property
+    def _highest(self) -> float:
+        return HIGHEST_DB if self.word == RETURN_LOSS else HIGHEST_VSWR
+
+    def _figure(self, figures: Figures) -> Array:
+        return figures.return_loss_db if self.word == RETURN_LOSS else vswr(figures.reflected_share)
+
+    def _text(self, value: float) -> str:
+        if self.word == RETURN_LOSS:
+            return format_db(value)
+        return f"{value:.2f}" if value < HIGHEST_VSWR else f"over {HIGHEST_VSWR:.0f}"
+
+
+def vswr(reflected_share: Array | float) -> Array:
+    """(1 + r)/(1 - r) of the share r^2 that is reflected; inf from a share of 1 on."""
+    r = np.sqrt(reflected_share)
+    with np.errstate(divide="ignore"):
+        found: Array = np.where(r < 1, (1 + r) / np.where(r < 1, 1 - r, 1), np.inf)
+    return found

@@ -44,10 +44,11 @@ def distances(x: Array, y: Array, at: tuple[float, float]) -> Array:
     """
     px, py = np.broadcast_arrays(x - at[0], y - at[1])
     if px.shape[-1] == 1:
-        return np.nan_to_num(np.hypot(px, py)[:, 0], nan=np.inf)
+        px, py = np.repeat(px, 2, axis=-1), np.repeat(py, 2, axis=-1)
     dx, dy = np.diff(px), np.diff(py)
     square = dx * dx + dy * dy
     share = -(px[:, :-1] * dx + py[:, :-1] * dy) / np.where(square == 0, 1.0, square)
     share = np.clip(share, 0.0, 1.0)
     apart = np.hypot(px[:, :-1] + share * dx, py[:, :-1] + share * dy)
-    return np.nan_to_num(apart, nan=np.inf).min(axis=-1, initial=np.inf)
+    nearest: Array = np.where(np.isnan(apart), np.inf, apart).min(axis=-1, initial=np.inf)
+    return nearest

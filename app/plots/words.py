@@ -19,6 +19,7 @@ class Quiet(QAbstractButton):
         self.setText(text)
         self.setAttribute(Qt.WidgetAttribute.WA_Hover)
         self.setCursor(Qt.CursorShape.PointingHandCursor)
+        self.setFocusPolicy(Qt.FocusPolicy.TabFocus)
 
     def pen(self) -> QPen:
         """The ink for the button's present state."""

@@ -43,8 +43,7 @@ class Coax(Lines):
         return 1 + sum(e is not None for e in self.ends)
 
     def lines(self, cable: CableFigures | None) -> tuple[Line, ...]:
-        if cable is None:
-            raise LookupError(self.cable)
+        assert cable is not None
         main = Line(
             cable.z0_ohm,
             self.length_m / (cable.velocity_factor * SPEED_OF_LIGHT_M_PER_S),

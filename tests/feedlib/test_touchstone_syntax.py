@@ -100,12 +100,12 @@ def test_noise_block_may_begin_at_the_last_network_frequency() -> None:
     ],
 )
 def test_rows_after_a_drop_that_are_no_noise_data_are_refused(rows: str, line: int) -> None:
-    with pytest.raises(TouchstoneError, match=rf"^amplifier\.s2p, line {line}: "):
+    with pytest.raises(TouchstoneError, match=rf'^"amplifier\.s2p", line {line}: '):
         read_touchstone(f"# GHz S MA\n{rows}", "amplifier.s2p")
 
 
 def test_a_drop_is_no_noise_block_with_other_than_two_ports() -> None:
-    with pytest.raises(TouchstoneError, match=r"^load\.s1p, line 3: the frequency must be above"):
+    with pytest.raises(TouchstoneError, match=r'^"load\.s1p", line 3: the frequency must be above'):
         read_touchstone("# GHz\n2 .5 0\n1 .7 .64 69 .38\n", "load.s1p")
 
 
@@ -220,7 +220,7 @@ def test_refused_in_one_sentence_with_the_line(name: str, text: str, line: int, 
     with pytest.raises(TouchstoneError) as refusal:
         read_touchstone(text, name)
     sentence = str(refusal.value)
-    assert sentence.startswith(f"{name}, line {line}: ")
+    assert sentence.startswith(f'"{name}", line {line}: ')
     assert about in sentence
     assert "\n" not in sentence
     assert len(sentence) < 160

@@ -155,14 +155,14 @@ def test_broken_rules_of_version_2_are_refused(wrong: str, right: str, line: int
     with pytest.raises(TouchstoneError) as refusal:
         read_touchstone(GOOD_2.replace(right, wrong), "part.s2p")
     sentence = str(refusal.value)
-    assert sentence.startswith(f"part.s2p, line {line}: ")
+    assert sentence.startswith(f'"part.s2p", line {line}: ')
     assert about in sentence
 
 
 def test_keywords_after_the_data_are_refused() -> None:
     middle = ("[Number of Ports] 1", "[Number of Frequencies] 1")
     text = version_2(*middle, data="1 0 0\n[Reference] 50")
-    with pytest.raises(TouchstoneError, match=r"^load\.ts, line 5: after \[Network Data\] must come \[End\]"):
+    with pytest.raises(TouchstoneError, match=r'^"load\.ts", line 5: after \[Network Data\] must come \[End\]'):
         read_touchstone(text, "load.ts")
 
 

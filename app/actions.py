@@ -1,0 +1,89 @@
+"""Every action of the program as one record; menus and keys are made from this table."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+from PySide6.QtGui import QAction, QKeySequence
+from PySide6.QtWidgets import QMenu, QMenuBar
+
+if TYPE_CHECKING:
+    from app.window import Window
+
+Key = QKeySequence.StandardKey | str | None
+
+
+@dataclass(frozen=True, slots=True)
+class ActionRecord:
+    """One action: its id, its menu (with "/" for a submenu), its words, its keys, and what it does to the window."""
+
+    id: str
+    menu: str
+    text: str
+    keys: Key
+    run: Callable[[Window], None]
+    tip: str = ""
+
+
+STANDARD = QKeySequence.StandardKey
+RULE = "-"
+"""In the table's id: a line between groups."""
+
+ACTIONS: tuple[ActionRecord, ...] = (
+    ActionRecord("new", "File", "&New", STANDARD.New, lambda w: w.files.new(), "Begin with a radio alone"),
+    ActionRecord("open", "File", "&Open…", STANDARD.Open, lambda w: w.files.open(), "Open a plan"),
+    ActionRecord("save", "File", "&Save", STANDARD.Save, lambda w: w.files.save(), "Save the plan"),
+    ActionRecord("save_as", "File", "Save &as…", STANDARD.SaveAs, lambda w: w.files.save_as(), "Save under a new name"),
+    ActionRecord(RULE, "File", "", None, lambda w: None),
+    ActionRecord("quit", "File", "&Quit", STANDARD.Quit, lambda w: w.close_asking(), "Close the window"),
+    ActionRecord("undo", "Edit", "&Undo", STANDARD.Undo, lambda w: w.store.stack.undo(), "Take the last act back"),
+    ActionRecord("redo", "Edit", "&Redo", STANDARD.Redo, lambda w: w.store.stack.redo(), "Do it again"),
+    ActionRecord(RULE, "Edit", "", None, lambda w: None),
+    ActionRecord("delete", "Edit", "&Delete", STANDARD.Delete, lambda w: w.delete(), "Take parts or a join away"),
+    ActionRecord(
+        "select_all", "Edit", "Select &all", STANDARD.SelectAll, lambda w: w.select_all(), "Select every part"
+    ),
+    ActionRecord("fit", "View", "&Fit the harness", "Ctrl+0", lambda w: w.bench.fit(), "Show the whole harness"),
+    ActionRecord("fit_selection", "View", "Fit the &selection", "Ctrl+9", lambda w: w.bench.fit_selection(), ""),
+    ActionRecord("zoom_in", "View", "Zoom &in", STANDARD.ZoomIn, lambda w: w.bench.zoom(1.25), ""),
+    ActionRecord("zoom_out", "View", "Zoom &out", STANDARD.ZoomOut, lambda w: w.bench.zoom(0.8), ""),
+    ActionRecord(RULE, "View", "", None, lambda w: None),
+    ActionRecord("theme_system", "View/Theme", "As the &system", None, lambda w: w.choose_theme("system"), ""),
+    ActionRecord("theme_light", "View/Theme", "&Light", None, lambda w: w.choose_theme("light"), ""),
+    ActionRecord("theme_dark", "View/Theme", "&Dark", None, lambda w: w.choose_theme("dark"), ""),
+)
+
+
+def build_menus(window: Window, bar: QMenuBar) -> tuple[dict[str, QAction], dict[str, QMenu]]:
+    """Fill the menu bar from the table; returns the actions by id and the menus by name."""
+    menus: dict[str, QMenu] = {}
+    actions: dict[str, QAction] = {}
+    for record in ACTIONS:
+        menu = _menu(bar, menus, record.menu)
+        if record.id == RULE:
+            menu.addSeparator()
+            continue
+        action = QAction(record.text, window)
+        if record.keys is not None:
+            action.setShortcuts(QKeySequence.keyBindings(record.keys)) if isinstance(
+                record.keys, QKeySequence.StandardKey
+            ) else action.setShortcut(QKeySequence(record.keys))
+        action.setStatusTip(record.tip)
+        action.triggered.connect(_runner(record, window))
+        menu.addAction(action)
+        actions[record.id] = action
+    return actions, menus
+
+
+def _runner(record: ActionRecord, window: Window) -> Callable[[], None]:
+    return lambda: record.run(window)
+
+
+def _menu(bar: QMenuBar, menus: dict[str, QMenu], name: str) -> QMenu:
+    if name not in menus:
+        parent, _, own = name.rpartition("/")
+        above: QMenuBar | QMenu = _menu(bar, menus, parent) if parent else bar
+        menus[name] = above.addMenu(f"&{own}")
+    return menus[name]

@@ -1,0 +1,99 @@
+"""Coax as a swell: its edges are the standing wave's voltage along it at the mark."""
+
+from __future__ import annotations
+
+import math
+
+import numpy as np
+from PySide6.QtCore import QPointF, QRectF, Qt
+from PySide6.QtGui import QColor, QPainter, QPolygonF
+
+from app.bench.pictures.base import Picture, Shown, one_line, pen, stubs
+from app.editing.wording import format_length
+from feedlib.conventions import guided_wavelength_m
+from feedlib.parts import Coax
+from feedlib.plan import Cable, Placed, Plan
+
+UNIT_HEIGHT = 19.0
+"""Half-height of a matched section: |V| = the forward wave at its entry."""
+TALLEST = 2.4
+TICK_DEG = 45.0
+TICK_PITCH = 5.0
+POINTS = 49
+
+
+def electrical_deg(part: Coax, cable: Cable | None, frequency_hz: float) -> float:
+    """Electrical length of the cable itself at a frequency."""
+    factor = cable.velocity_factor if cable else 1.0
+    return 360 * part.length_m / guided_wavelength_m(frequency_hz, factor)
+
+
+def drawn_width(degrees: float) -> float:
+    """Bench units for an electrical length: about straight at first, then softly flattening, 360 at most."""
+    return min(360.0, 44 + 78 * math.log2(1 + degrees / 45))
+
+
+class CoaxPicture(Picture):
+    """The swell, in the colour of its characteristic impedance, with a tick every 45 electrical degrees."""
+
+    def body(self, placed: Placed, plan: Plan) -> QRectF:
+        assert isinstance(placed.part, Coax)
+        degrees = electrical_deg(placed.part, plan.cables.get(placed.part.cable), plan.band.marked_hz)
+        width = drawn_width(degrees)
+        return QRectF(-width / 2, -UNIT_HEIGHT, width, 2 * UNIT_HEIGHT)
+
+    def paint(self, painter: QPainter, shown: Shown) -> None:
+        part, look = shown.placed.part, shown.look
+        assert isinstance(part, Coax)
+        cable = shown.plan.cables.get(part.cable)
+        body = self.body(shown.placed, shown.plan)
+        colour = look.impedance_colour(cable.z0_ohm) if cable else look.soft
+        stubs(painter, self, shown)
+        height = self._heights(shown)
+        xs = np.linspace(body.left(), body.right(), height.size)
+        outline = [QPointF(x, -y) for x, y in zip(xs, height, strict=True)]
+        outline += [QPointF(x, y) for x, y in zip(xs[::-1], height[::-1], strict=True)]
+        wash = QColor(colour)
+        wash.setAlpha(70)
+        edge = pen(colour, 2.4 if shown.hovered else 1.5)
+        if cable is None:
+            edge.setStyle(Qt.PenStyle.DashLine)
+        painter.setPen(edge)
+        painter.setBrush(wash)
+        painter.drawPolygon(QPolygonF(outline))
+        painter.setPen(pen(colour, 2))
+        painter.drawLine(QPointF(body.left(), 0), QPointF(body.right(), 0))
+        self._ticks(painter, electrical_deg(part, cable, shown.plan.band.marked_hz), body)
+        painter.setPen(pen(look.ink, 1.4))
+        for end, x in zip(part.ends, (body.left(), body.right()), strict=True):
+            if end is not None:
+                painter.setBrush(QColor(look.impedance_colour(end.z0_ohm)))
+                painter.drawRect(QRectF(x - 4, -6, 8, 12))
+
+    @staticmethod
+    def _ticks(painter: QPainter, degrees: float, body: QRectF) -> None:
+        count = degrees / TICK_DEG
+        if count < 1:
+            return
+        every = max(1, 2 ** math.ceil(math.log2(max(1.0, count * TICK_PITCH / body.width()))))
+        ticks = int(count / every)
+        for n in range(1, ticks + 1):
+            x = body.left() + body.width() * n * every / count
+            painter.drawLine(QPointF(x, -5), QPointF(x, 5))
+
+    @staticmethod
+    def _heights(shown: Shown) -> np.ndarray[tuple[int], np.dtype[np.float64]]:
+        """Half-heights along the drawing, port 1 first."""
+        wave = shown.answer.swell(shown.placed.id, POINTS) if shown.answer is not None else None
+        if wave is None or wave[2] == 0:
+            return np.full(2, UNIT_HEIGHT)
+        return np.minimum(np.abs(wave[1]) / abs(wave[2]), TALLEST) * UNIT_HEIGHT + 0.75
+
+    def detail(self, shown: Shown) -> str:
+        part = shown.placed.part
+        assert isinstance(part, Coax)
+        cable = shown.plan.cables.get(part.cable)
+        length = format_length(part.length_m, "mm", frequency_hz=None, velocity_factor=None)
+        if cable is None:
+            return f"no cable {one_line(part.cable)} · {length}"
+        return f"{one_line(part.cable)} · {length} · {electrical_deg(part, cable, shown.plan.band.marked_hz):.1f}°"

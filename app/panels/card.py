@@ -1,0 +1,234 @@
+"""The part card: the selected part's fields, its figures at the mark and its problems. Knows no kinds of part."""
+
+from __future__ import annotations
+
+from typing import Any
+
+from PySide6.QtGui import QShowEvent
+from PySide6.QtWidgets import QPushButton, QVBoxLayout, QWidget
+
+from app.editing import edits
+from app.editing.wording import format_frequency
+from app.look import Look
+from app.panels.around import Around
+from app.panels.blocks import FigureBlock, ProblemBlock, rule
+from app.panels.controls import LineField
+from app.panels.editors import NoteEditor, TextEditor
+from app.panels.fields import form_for
+from app.panels.figures import figure_rows
+from app.panels.forms import RecordForm
+from app.panels.shelf import stocked
+from app.panels.style import MARGIN, dress, plain_label, set_text, tooltip
+from app.panels.tab_order import tab_through
+from app.store import Store
+from feedlib.errors import PlanError
+from feedlib.parts import Part
+from feedlib.plan import Placed, Plan
+from feedlib.schema import specs
+
+MOST_NAMES = 12
+
+
+class PartCard(QWidget):
+    """The card of what is selected: one part with all its fields, or several parts in short."""
+
+    def __init__(self, store: Store, look: Look) -> None:
+        super().__init__()
+        self._store = store
+        self.setProperty("role", "card")
+        layout = QVBoxLayout(self)
+        layout.setContentsMargins(MARGIN, 12, MARGIN, MARGIN)
+        self._one, self._several = _OnePart(store, look), _SeveralParts(store)
+        layout.addWidget(self._one)
+        layout.addWidget(self._several)
+        layout.addStretch(1)
+        self.set_look(look)
+        store.plan_changed.connect(self._plan_changed)
+        store.selection_changed.connect(self._fill)
+        store.answer_changed.connect(self._judge)
+        self._fill()
+
+    def set_look(self, look: Look) -> None:
+        """Draw with another look."""
+        dress(self, look)
+        self._one.problems.set_look(look)
+
+    def showEvent(self, event: QShowEvent) -> None:
+        super().showEvent(event)
+        self._fill()
+
+    def _plan_changed(self, old: Plan, new: Plan) -> None:
+        self._fill()
+
+    def _fill(self) -> None:
+        store = self._store
+        if self.isHidden() or not store.selected:
+            return
+        one = len(store.selected) == 1
+        self._one.setVisible(one)
+        self._several.setVisible(not one)
+        if one:
+            self._one.fill(store.plan.placed(store.selected[0]))
+            self._judge()
+        else:
+            self._several.fill([store.plan.placed(part_id).name for part_id in store.selected])
+
+    def _judge(self) -> None:
+        """Show what the answer says."""
+        store = self._store
+        if self.isHidden() or len(store.selected) != 1:
+            return
+        part_id = store.selected[0]
+        if store.answer is not None:
+            head, rows = f"At {format_frequency(store.plan.band.marked_hz)}", figure_rows(store.answer, part_id)
+        else:
+            head, rows = f"Not solved: {(store.why_not or '').rstrip('.')}.", []
+        self._one.figures.show_rows(head, rows)
+        self._one.problems.show_problems([(p, "") for p in store.problems if p.part_id == part_id])
+
+
+class _OnePart(QWidget):
+    """Everything about one part."""
+
+    def __init__(self, store: Store, look: Look) -> None:
+        super().__init__()
+        self._store = store
+        self._placed: Placed | None = None
+        self._forms: dict[type[Part], RecordForm] = {}
+        self._name = LineField("Name")
+        self._name.setProperty("role", "name")
+        self._kind = plain_label(role="soft")
+        self._id = TextEditor("Id")
+        self._place = QVBoxLayout()
+        self._note = NoteEditor("Note")
+        self.figures, self.problems = FigureBlock(), ProblemBlock(look, leads=False)
+        layout = QVBoxLayout(self)
+        layout.setContentsMargins(0, 0, 0, 0)
+        layout.setSpacing(8)
+        layout.addWidget(self._name)
+        layout.addWidget(self._kind)
+        layout.addWidget(self._id)
+        layout.addLayout(self._place)
+        layout.addWidget(self._note)
+        layout.addWidget(rule())
+        layout.addWidget(self.figures)
+        layout.addWidget(self.problems)
+        layout.addStretch(1)
+        self._name.typed.connect(self._label_typed)
+        self._name.restored.connect(self._show_name)
+        self._id.entered.connect(self._id_typed)
+        self._note.entered.connect(self._note_typed)
+
+    def fill(self, placed: Placed) -> None:
+        """Show a part; what was typed and not taken stays only while it is the same part."""
+        plan, store = self._store.plan, self._store
+        form = self._form(type(placed.part))
+        if self._placed is None or placed.id != self._placed.id:
+            for editor in (self._id, self._note, form):
+                editor.restore()
+        self._placed = placed
+        around = Around(plan, part_id=placed.id)
+        if not (self._name.hasFocus() and self._name.isModified()):
+            self._show_name()
+        set_text(self._kind, kind_and_place(store.plan, placed))
+        self._id.fill(placed.id, around)
+        form.fill(placed.part, around)
+        self._note.fill(placed.note, around)
+
+    def _form(self, cls: type[Part]) -> RecordForm:
+        """The form of a kind, made when it is first needed; the others hide."""
+        if cls not in self._forms:
+            form = self._forms[cls] = form_for(cls)
+            form.entered.connect(self._changed)
+            self._place.addWidget(form)
+            tab_through(self._id.control, form)
+        for kind, form in self._forms.items():
+            form.setVisible(kind is cls)
+        return self._forms[cls]
+
+    def _show_name(self) -> None:
+        assert self._placed is not None
+        self._name.show_text(self._placed.name)
+        self._name.setToolTip(tooltip(self._placed.name))
+
+    def _label_typed(self, text: str) -> None:
+        assert self._placed is not None
+        label = edits.plain_text(text).strip()
+        if label == self._placed.id:
+            label = ""
+        self._store.edit(f"Name {self._placed.id}", edits.labelled(self._store.plan, self._placed.id, label=label))
+        self._show_name()
+
+    def _note_typed(self, text: str, turned: bool) -> None:
+        assert self._placed is not None
+        self._store.edit(f"Note on {self._placed.name}", edits.labelled(self._store.plan, self._placed.id, note=text))
+
+    def _id_typed(self, text: str, turned: bool) -> None:
+        assert self._placed is not None
+        old, new = self._placed.id, text.strip()
+        try:
+            plan = edits.renamed(self._store.plan, old, new)
+        except PlanError as error:
+            self._id.refuse(error.reason[:1].upper() + error.reason[1:] + ".")
+            return
+        self._store.edit(f"Rename {old} to {new}", plan)
+        self._store.select((new,))
+
+    def _changed(self, changes: dict[str, Any], turned: bool) -> None:
+        assert self._placed is not None
+        store, placed = self._store, self._placed
+        name = next(reversed(changes))
+        try:
+            plan = edits.changed_part(store.plan, placed.id, **changes)
+        except PlanError as error:
+            self._forms[type(placed.part)].refuse(error, name)
+            return
+        text = f"Change {specs(type(placed.part))[name].label.lower()} of {placed.name}"
+        merge = None
+        if turned and name == "length_m":
+            longer = changes[name] > getattr(placed.part, name)
+            text, merge = f"{'Lengthen' if longer else 'Shorten'} {placed.name}", f"length {placed.id}"
+        elif turned:
+            merge = f"length {placed.id} {name}"
+        store.edit(text, stocked(plan, changes.get("cable")), merge=merge)
+
+
+class _SeveralParts(QWidget):
+    """Several selected parts in short, and what can be done with all of them."""
+
+    def __init__(self, store: Store) -> None:
+        super().__init__()
+        self._store = store
+        self._head, self._names = plain_label(role="title"), plain_label(role="soft")
+        self._delete = QPushButton("Delete")
+        self._delete.clicked.connect(self._delete_all)
+        layout = QVBoxLayout(self)
+        layout.setContentsMargins(0, 0, 0, 0)
+        layout.setSpacing(8)
+        for widget in (self._head, self._names, self._delete):
+            layout.addWidget(widget)
+
+    def fill(self, names: list[str]) -> None:
+        """Show the names of some parts."""
+        set_text(self._head, f"{len(names)} parts selected")
+        more = len(names) - MOST_NAMES
+        set_text(self._names, ", ".join(names[:MOST_NAMES]) + (f" and {more} more" if more > 0 else ""))
+        self._delete.setAccessibleName(f"Delete {len(names)} parts")
+
+    def _delete_all(self) -> None:
+        selected = self._store.selected
+        self._store.edit(f"Delete {len(selected)} parts", edits.removed(self._store.plan, selected))
+
+
+def kind_and_place(plan: Plan, placed: Placed) -> str:
+    """The kind of a part in trade words, and what it is joined to."""
+    mates = [plan.mate(port) for port in placed.ports()]
+    names = [plan.placed(mate.part).name for mate in mates if mate is not None]
+    kind = placed.part.LABEL
+    if not names:
+        return f"{kind}, joined to nothing"
+    if len(names) > MOST_NAMES:
+        return f"{kind} between {len(names)} parts"
+    if len(names) == 1:
+        return f"{kind} at {names[0]}"
+    return f"{kind} between {', '.join(names[:-1])} and {names[-1]}"

@@ -1,0 +1,272 @@
+"""The window: builds the views around one store and connects them. Holds no logic of the plan."""
+
+from __future__ import annotations
+
+from pathlib import Path
+from typing import TYPE_CHECKING, Literal
+
+from PySide6.QtCore import QByteArray, QPoint, QPointF, QSettings, Qt
+from PySide6.QtGui import QCloseEvent, QGuiApplication
+from PySide6.QtWidgets import QFileDialog, QHBoxLayout, QLabel, QMainWindow, QMenu, QSplitter, QVBoxLayout, QWidget
+
+from app.actions import build_menus
+from app.bench.placing import Placing
+from app.bench.view import BenchView
+from app.editing import edits
+from app.editing.edits import new_plan
+from app.files import Files
+from app.look import DARK, LIGHT, Look, font, palette_of, system_look
+from app.panels.drawer import PartsDrawer
+from app.panels.drawer_entries import entries
+from app.panels.rail import FrequencyRail
+from app.panels.side_sheet import SideSheet
+from app.panels.verdicts import VerdictStrip
+from app.store import Store
+from feedlib import Plan
+from feedlib.assets_place import ASSETS
+from feedlib.plan import Join, Port
+
+if TYPE_CHECKING:
+    from app.plots.row import PlotRow
+
+Theme = Literal["system", "light", "dark"]
+
+
+class Window(QMainWindow):
+    """One window on one plan. The plots come last (`build_plots`), so that the window is there at once."""
+
+    def __init__(
+        self, plan: Plan | None, path: Path | None, *, look: Look | None = None, remember: bool = True
+    ) -> None:
+        super().__init__()
+        self._settings = QSettings() if remember else None
+        self.look = look or self._chosen_look()
+        self.store = Store(plan or new_plan(), path if plan is not None and not _is_example(path) else None)
+        self.files = Files(self.store, self)
+        self.bench = BenchView(self.store, self.look)
+        self.placing = Placing(self.store, entries(), self)
+        self.drawer = PartsDrawer(self.look)
+        self.rail = FrequencyRail(self.store, self.look)
+        self.strip = VerdictStrip(self.store, self.look)
+        self.sheet = SideSheet(self.store, self.look)
+        self.plots: PlotRow | None = None
+        self.title, self.band, self.hint = QLabel(), QLabel(), QLabel(self.bench)
+        self._split = QSplitter(Qt.Orientation.Vertical)
+        self._lay_out()
+        self.actions_by_id, self.menus = build_menus(self, self.menuBar())
+        self._build_examples()
+        self._connect()
+        self.set_look(self.look)
+        self._tell_file()
+        self._tell_plan()
+        self._restore_places()
+        self.bench.setFocus()
+
+    # --- building ---
+
+    def _lay_out(self) -> None:
+        header = QHBoxLayout()
+        header.setContentsMargins(22, 8, 22, 0)
+        self.title.setFont(font("head", bold=True))
+        for label in (self.title, self.band, self.hint):
+            label.setTextFormat(Qt.TextFormat.PlainText)
+        header.addWidget(self.title, 1)
+        header.addWidget(self.band)
+        above = QWidget()
+        middle = QHBoxLayout(above)
+        middle.setContentsMargins(0, 0, 0, 0)
+        middle.setSpacing(0)
+        middle.addWidget(self.drawer)
+        column = QVBoxLayout()
+        column.setSpacing(0)
+        column.addWidget(self.bench, 1)
+        column.addWidget(self.rail)
+        middle.addLayout(column, 1)
+        self._split.addWidget(above)
+        self._split.setChildrenCollapsible(False)
+        self._split.setHandleWidth(5)
+        body = QHBoxLayout()
+        body.setContentsMargins(0, 0, 0, 0)
+        body.setSpacing(0)
+        body.addWidget(self._split, 1)
+        body.addWidget(self.sheet)
+        whole = QWidget()
+        layout = QVBoxLayout(whole)
+        layout.setContentsMargins(0, 0, 0, 0)
+        layout.setSpacing(0)
+        layout.addLayout(header)
+        layout.addWidget(self.strip)
+        layout.addLayout(body, 1)
+        self.setCentralWidget(whole)
+        self.setMinimumSize(900, 600)
+        self.resize(1600, 1000)
+        self.hint.setFont(font("text"))
+        self.hint.setAttribute(Qt.WidgetAttribute.WA_TransparentForMouseEvents)
+        self.hint.move(24, 16)
+
+    def build_plots(self) -> None:
+        """Add the row of plots; importing them takes longer than all else."""
+        from app.plots.row import PlotRow
+
+        self.plots = PlotRow(self.store, self.look)
+        self._split.addWidget(self.plots)
+        height = max(240, round(self._split.height() * 0.37))
+        self._split.setSizes([self._split.height() - height, height])
+        self._split.setStretchFactor(0, 1)
+        if self._settings is not None:
+            state = self._settings.value("window/split")
+            if isinstance(state, QByteArray):
+                self._split.restoreState(state)
+        self.bench.fit()
+
+    def settle(self) -> None:
+        """Finish what views put off until things are quiet (for a picture)."""
+        self.bench.fit()
+        if self.plots is not None:
+            self.plots.settle()
+
+    def _build_examples(self) -> None:
+        menu = self.menus["File"].addMenu("&Examples")
+        self.menus["File"].insertMenu(self.actions_by_id["save"], menu)
+        for path in sorted((ASSETS / "examples").glob("*.feedplan")):
+            action = menu.addAction(path.stem.replace("-", " ").capitalize())
+            action.triggered.connect(lambda _=False, p=path: self.files.open(p))
+
+    def _connect(self) -> None:
+        store = self.store
+        store.file_changed.connect(self._tell_file)
+        store.plan_changed.connect(self._tell_plan)
+        store.stack.cleanChanged.connect(self._tell_file)
+        for which, name in (("undo", "Undo"), ("redo", "Redo")):
+            action = self.actions_by_id[which]
+            can = store.stack.canUndoChanged if which == "undo" else store.stack.canRedoChanged
+            words = store.stack.undoTextChanged if which == "undo" else store.stack.redoTextChanged
+            can.connect(action.setEnabled)
+            words.connect(lambda text, a=action, n=name: a.setText(f"{n} {text}".rstrip()))
+            action.setEnabled(False)
+        self.drawer.asked.connect(lambda key: self.placing.put_behind(key, self._middle()))
+        self.drawer.file_asked.connect(lambda: self._measured(self._middle()))
+        self.bench.part_dropped.connect(self._dropped)
+        self.bench.files_dropped.connect(self._files_dropped)
+        self.bench.offer_asked.connect(self._offer)
+
+    # --- what people ask for ---
+
+    def delete(self) -> None:
+        """Take the selected parts, or the selected join, away."""
+        self.placing.delete(self.bench.bench.selected_join)
+
+    def select_all(self) -> None:
+        """Select every part."""
+        self.store.select(tuple(p.id for p in self.store.plan.parts))
+
+    def choose_theme(self, theme: Theme) -> None:
+        """Light, dark, or as the system has it; remembered."""
+        if self._settings is not None:
+            self._settings.setValue("window/theme", theme)
+        self.set_look(self._chosen_look())
+
+    def set_look(self, look: Look) -> None:
+        """Draw everything in a theme."""
+        self.look = look
+        self.setPalette(palette_of(look))
+        self.menuBar().setPalette(palette_of(look))
+        self.centralWidget().setAutoFillBackground(True)
+        for label, colour in ((self.title, look.ink), (self.band, look.soft), (self.hint, look.soft)):
+            label.setStyleSheet(f"color: {colour}; background: transparent")
+        self._split.setStyleSheet(f"QSplitter::handle {{ background: {look.hairline}; margin: 2px 0 }}")
+        for view in (self.bench, self.drawer, self.rail, self.strip, self.sheet, self.plots):
+            if view is not None:
+                view.set_look(look)
+
+    def close_asking(self) -> None:
+        """Close the window; asks when there is something to lose."""
+        self.close()
+
+    def close_without_asking(self) -> None:
+        """Close the window and lose what is not saved."""
+        self.store.stack.setClean()
+        self.close()
+
+    def _dropped(self, key: str, at: QPointF, join: Join | None) -> None:
+        if key in entries():
+            self.placing.put(key, at, join)
+        else:
+            self._measured(at, join)
+
+    def _measured(self, at: QPointF, join: Join | None = None) -> None:
+        name, _ = QFileDialog.getOpenFileName(
+            self, "A Touchstone file", str(Path.home()), "Touchstone (*.s*p *.ts);;All files (*)"
+        )
+        if name:
+            self.placing.put_file(Path(name), at, join)
+
+    def _files_dropped(self, names: list[str], at: QPointF) -> None:
+        for name in names:
+            if name.lower().endswith(".feedplan"):
+                self.files.open(Path(name))
+                return
+            self.placing.put_file(Path(name), at, None)
+
+    def _offer(self, port: Port, at: QPointF, screen: QPoint) -> None:
+        """The parts that may stand where a join was pulled to."""
+        menu = QMenu(self)
+        menu.setPalette(palette_of(self.look))
+        for key, entry in entries().items():
+            menu.addAction(entry.label).setData(key)
+        chosen = menu.exec(screen)
+        if chosen is not None:
+            self.placing.put_at_port(str(chosen.data()), at, port)
+
+    def _middle(self) -> QPointF:
+        return self.bench.mapToScene(self.bench.viewport().rect().center())
+
+    # --- what the window itself tells ---
+
+    def _tell_file(self) -> None:
+        self.setWindowModified(self.files.unsaved)
+        name = edits.plain_text(self.store.plan.title) or "Untitled"
+        file = f" ({self.store.path.name})" if self.store.path is not None else ""
+        self.setWindowTitle(f"{name}{file}[*] – Feedwright")
+        self.title.setText(f"{name}   ·   edited" if self.files.unsaved else name)
+
+    def _tell_plan(self) -> None:
+        plan = self.store.plan
+        channels = f" · {len(plan.channels)} channels" if plan.channels else ""
+        self.band.setText(f"{plan.band.start_hz / 1e6:.9g} to {plan.band.stop_hz / 1e6:.9g} MHz{channels}")
+        empty = len(plan.parts) <= 1
+        self.hint.setText(
+            "Drag parts from the left on to the bench, or double-click one.\n"
+            "Pull from port to port to join; pull into the empty bench to be offered what fits."
+        )
+        self.hint.adjustSize()
+        self.hint.setVisible(empty)
+        self._tell_file()
+
+    def _chosen_look(self) -> Look:
+        theme = self._settings.value("window/theme", "system") if self._settings is not None else "light"
+        if theme in ("light", "dark"):
+            return LIGHT if theme == "light" else DARK
+        if QGuiApplication.styleHints().colorScheme() == Qt.ColorScheme.Dark:
+            return DARK
+        return system_look(QGuiApplication.palette())
+
+    def _restore_places(self) -> None:
+        if self._settings is not None:
+            geometry = self._settings.value("window/geometry")
+            if isinstance(geometry, QByteArray):
+                self.restoreGeometry(geometry)
+
+    def closeEvent(self, event: QCloseEvent) -> None:
+        if not self.files.may_go():
+            event.ignore()
+            return
+        if self._settings is not None:
+            self._settings.setValue("window/geometry", self.saveGeometry())
+            self._settings.setValue("window/split", self._split.saveState())
+        event.accept()
+
+
+def _is_example(path: Path | None) -> bool:
+    """Examples open as plans without a file, so that saving does not change them."""
+    return path is not None and path.resolve().is_relative_to(ASSETS.resolve())
