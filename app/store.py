@@ -1,15 +1,18 @@
 """The one place that holds the plan, its undo stack and its answer; views listen here and write nothing back.
 
-plan -> edit -> undo stack -> plan_changed(old, new) -> one solve per turn of the event loop -> answer_changed.
+plan -> edit -> undo stack -> plan_changed(old, new) -> solve -> answer_changed.
 """
 
 from __future__ import annotations
 
+import time
+from dataclasses import dataclass
 from pathlib import Path
 
-from PySide6.QtCore import QObject, QTimer, Signal
+from PySide6.QtCore import QObject, Signal
 from PySide6.QtGui import QUndoCommand, QUndoStack
 
+from app.jobs import Jobs
 from feedlib import Answer, Plan, Problem, SolveError, check, solve
 from feedlib.topology import Topology, compile_plan
 
@@ -38,16 +41,48 @@ class Edit(QUndoCommand):
         return True
 
 
+AT_ONCE_S = 0.02
+"""A harness that took longer to solve than this is solved in the worker the next time."""
+
+
+@dataclass(frozen=True, slots=True)
+class Attempt:
+    """What came of solving a plan: an answer, or why there is none and at which part."""
+
+    problems: tuple[Problem, ...]
+    answer: Answer | None
+    why_not: str | None
+    culprit: str | None
+    topology: Topology
+
+
+def _attempt(plan: Plan, topology: Topology | None) -> tuple[Attempt, float]:
+    """The attempt and how many seconds it took."""
+    start = time.perf_counter()
+    if topology is None or not topology.fits(plan):
+        topology = compile_plan(plan)
+    problems = check(plan)
+    try:
+        answer = solve(plan, topology)
+        _ = answer.verdicts
+        attempt = Attempt(problems, answer, None, None, topology)
+    except SolveError as error:
+        attempt = Attempt(problems, None, str(error), error.part, topology)
+    return attempt, time.perf_counter() - start
+
+
 class Store(QObject):
     """Holds the plan (immutable, replaced), its file, the answer and what is selected.
 
-    plan_changed(old, new) comes first; answer_changed() once all waiting edits are solved. While `answer` belongs to
-    an older plan, `stale` says so. `why_not` is the sentence when the plan cannot be solved (answer is then None).
+    plan_changed(old, new) comes first, answer_changed() when it is solved: at once for all but large harnesses. While
+    `answer` belongs to an older plan, `stale` says so. `why_not` is the sentence when the plan cannot be solved
+    (answer is then None), `culprit` the part that stops it.
     """
 
     plan_changed = Signal(object, object)
     answer_changed = Signal()
     file_changed = Signal()
+    stale_changed = Signal()
     selection_changed = Signal()
     hover_changed = Signal()
 
@@ -61,17 +96,11 @@ class Store(QObject):
         self.selected: tuple[str, ...] = ()
         self.hovered: str | None = None
         self.stack = QUndoStack(self)
+        self.stale = False
         self._topology: Topology | None = None
-        self._later = QTimer(self)
-        self._later.setSingleShot(True)
-        self._later.setInterval(0)
-        self._later.timeout.connect(self.solve_now)
+        self._solve_s = 0.0
+        self._jobs = Jobs(self)
         self.solve_now()
-
-    @property
-    def stale(self) -> bool:
-        """Whether the answer is behind the plan."""
-        return self._later.isActive()
 
     def edit(self, text: str, plan: Plan, *, merge: str | None = None) -> None:
         """Make `plan` the plan, as an act that can be undone; nothing happens when it is the same."""
@@ -105,15 +134,37 @@ class Store(QObject):
             self.hover_changed.emit()
 
     def solve_now(self) -> None:
-        """Solve at once instead of when the waiting events are done."""
-        self._later.stop()
-        self.problems = check(self.plan)
-        try:
-            if self._topology is None or not self._topology.fits(self.plan):
-                self._topology = compile_plan(self.plan)
-            self.answer, self.why_not, self.culprit = solve(self.plan, self._topology), None, None
-        except SolveError as error:
-            self.answer, self.why_not, self.culprit = None, str(error), error.part
+        """Solve here and now."""
+        self._jobs.drop()
+        self._take_in(self.plan, *_attempt(self.plan, self._topology))
+
+    def close(self) -> None:
+        """End the worker."""
+        self._jobs.close()
+
+    def _solve(self) -> None:
+        """Solve at once when that takes no longer than a frame, else in the worker; the views then say they follow."""
+        plan, topology = self.plan, self._topology
+        if self._solve_s < AT_ONCE_S:
+            self.solve_now()
+            return
+        self.stale = True
+        self.stale_changed.emit()
+        self._jobs.submit(lambda: _attempt(plan, topology), lambda found, error: self._arrived(plan, found, error))
+
+    def _arrived(self, plan: Plan, found: tuple[Attempt, float], error: BaseException | None) -> None:
+        if error is not None:
+            raise error
+        self._take_in(plan, *found)
+
+    def _take_in(self, plan: Plan, attempt: Attempt, seconds: float) -> None:
+        self._solve_s = seconds
+        self.problems = attempt.problems
+        self.answer, self.why_not, self.culprit = attempt.answer, attempt.why_not, attempt.culprit
+        self._topology = attempt.topology
+        if self.stale:
+            self.stale = False
+            self.stale_changed.emit()
         self.answer_changed.emit()
 
     def _put(self, plan: Plan) -> None:
@@ -123,7 +174,7 @@ class Store(QObject):
             self.select(tuple(s for s in self.selected if s in ids))
         self.plan_changed.emit(old, plan)
         if _physics(old) != _physics(plan):
-            self._later.start()
+            self._solve()
 
 
 def _physics(plan: Plan) -> tuple[object, ...]:

@@ -123,7 +123,7 @@ class Window(QMainWindow):
         """Finish what views put off until things are quiet (for a picture)."""
         self.bench.fit()
         if self.plots is not None:
-            self.plots.settle()
+            self.plots.settle()  # type: ignore[attr-defined]
 
     def _build_examples(self) -> None:
         menu = self.menus["File"].addMenu("&Examples")
@@ -264,6 +264,7 @@ class Window(QMainWindow):
         if self._settings is not None:
             self._settings.setValue("window/geometry", self.saveGeometry())
             self._settings.setValue("window/split", self._split.saveState())
+        self.store.close()
         event.accept()
 
 

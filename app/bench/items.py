@@ -137,9 +137,13 @@ class JoinItem(QGraphicsItem):
         self.prepareGeometryChange()
         self._path = curve(a[0], b[0], 1 if a[1] > 0 else -1, 1 if b[1] > 0 else -1)
 
-    def middle(self) -> QPointF:
-        """A point on the curve half-way."""
-        return self._path.pointAtPercent(0.5) if self._path.length() > 0 else self._path.currentPosition()
+    def flag_place(self) -> tuple[QPointF, float]:
+        """Where an impedance flag stands, and how long its stem is: at a coax's end above its swell, else half-way."""
+        for item, port in zip((self.second, self.first), reversed(self.join), strict=True):
+            if item.shown.placed.part.KIND == "coax":
+                return item.port_at(port.number), item.body.height() / 2 + 12
+        point = self._path.pointAtPercent(0.5) if self._path.length() > 0 else self._path.currentPosition()
+        return point, 24.0
 
     def boundingRect(self) -> QRectF:
         return self._path.boundingRect().adjusted(-GRAB, -GRAB, GRAB, GRAB)
@@ -168,34 +172,31 @@ class FlagItem(QGraphicsItem):
     """An impedance flag: what the wave sees at a join, on a stem above it."""
 
     HEIGHT = 21.0
-    STEM = 24.0
 
     def __init__(self, look: Look) -> None:
         super().__init__()
-        self.look, self._words, self._width = look, "", 0.0
+        self.look, self._words, self._width, self._stem = look, "", 0.0, 24.0
         self.setZValue(3)
 
-    def say(self, words: str, at: QPointF) -> None:
+    def say(self, words: str, at: QPointF, stem: float) -> None:
         """Say `words` above a point."""
         self.setPos(at)
-        if words != self._words:
+        if words != self._words or stem != self._stem:
             self.prepareGeometryChange()
-            self._words = words
+            self._words, self._stem = words, stem
             self._width = QFontMetricsF(font("small")).horizontalAdvance(words) + 14
         self.update()
 
     def boundingRect(self) -> QRectF:
-        return QRectF(-self._width / 2, -self.STEM - self.HEIGHT, self._width, self.STEM + self.HEIGHT).adjusted(
-            -1, -1, 1, 1
-        )
+        return rect
 
     def paint(self, painter: QPainter, option: QStyleOptionGraphicsItem, widget: QWidget | None = None) -> None:
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)
         stem = pen(self.look.soft, 1)
         stem.setStyle(Qt.PenStyle.DotLine)
         painter.setPen(stem)
-        painter.drawLine(QPointF(0, -3), QPointF(0, -self.STEM))
-        rect = QRectF(-self._width / 2, -self.STEM - self.HEIGHT, self._width, self.HEIGHT)
+        painter.drawLine(QPointF(0, -3), QPointF(0, -self._stem))
+        rect = QRectF(-self._width / 2, -self._stem - self.HEIGHT, self._width, self.HEIGHT)
         painter.setPen(pen(self.look.hairline, 1.2))
         painter.setBrush(QColor(self.look.card))
         painter.drawRoundedRect(rect, 5, 5)

@@ -140,7 +140,7 @@ class BenchScene(QGraphicsScene):
             if flag is None:
                 self.flags[join] = flag = FlagItem(self.look)
                 self.addItem(flag)
-            flag.say(words, self.joins[join].middle())
+            flag.say(words, *self.joins[join].flag_place())
 
     def _follow_selection(self) -> None:
         for part_id, item in self.parts.items():

@@ -51,6 +51,7 @@ class BenchView(QGraphicsView):
         self.setTransformationAnchor(QGraphicsView.ViewportAnchor.NoAnchor)
         self.setViewportUpdateMode(QGraphicsView.ViewportUpdateMode.FullViewportUpdate)
         self.setSceneRect(QRectF(-50_000, -50_000, 100_000, 100_000))
+        self.setCacheMode(QGraphicsView.CacheModeFlag.CacheBackground)
         self.setMouseTracking(True)
         self.setAcceptDrops(True)
         self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
@@ -64,6 +65,7 @@ class BenchView(QGraphicsView):
     def set_look(self, look: Look) -> None:
         """Draw in another theme."""
         self.bench.set_look(look)
+        self.resetCachedContent()
 
     def fit(self) -> None:
         """Show the whole harness, at 100 % at most."""

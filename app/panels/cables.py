@@ -6,11 +6,12 @@ from dataclasses import replace
 from functools import partial
 from typing import Any
 
+from PySide6.QtGui import QAction
 from PySide6.QtWidgets import QMenu, QPushButton, QVBoxLayout, QWidget
 
 from app.editing import edits
 from app.panels.around import Around
-from app.panels.controls import LineField
+from app.panels.editors import TextEditor
 from app.panels.fields import form_for
 from app.panels.forms import RecordForm
 from app.panels.shelf import by_impedance, caution, figures_text, offer, stocked
@@ -30,11 +31,11 @@ class CableList(QWidget):
         super().__init__()
         self._store = store
         self._rows: dict[str, CableRow] = {}
+        self._types: dict[str, QAction] = {}
         self.add = QPushButton("Add a cable")
         self.add.setAccessibleName("Add a cable")
-        self.own_name = LineField("Name of the own cable")
-        self.own_name.setPlaceholderText("its name, then Enter")
-        self.own_name.hide()
+        self.own = TextEditor("Its name", placeholder="then Enter")
+        self.own.hide()
         self._list = QVBoxLayout()
         self._list.setSpacing(6)
         layout = QVBoxLayout(self)
@@ -42,13 +43,13 @@ class CableList(QWidget):
         layout.setSpacing(6)
         layout.addLayout(self._list)
         layout.addWidget(self.add)
-        layout.addWidget(self.own_name)
+        layout.addWidget(self.own)
         self.menu = QMenu(self)
         self.menu.setToolTipsVisible(True)
         self.menu.aboutToShow.connect(self._offer)
         self.add.setMenu(self.menu)
-        self.own_name.typed.connect(self._own_named)
-        self.own_name.restored.connect(self.own_name.hide)
+        self.own.entered.connect(self._own_named)
+        self.own.line.restored.connect(self.own.hide)
 
     def fill(self, plan: Plan) -> None:
         """Show a plan's cables."""
@@ -73,15 +74,19 @@ class CableList(QWidget):
             self._list.insertWidget(number, row)
 
     def _offer(self) -> None:
-        """The menu: types by impedance, then a cable of one's own."""
-        self.menu.clear()
+        """Fill the menu when it is first needed; offer only what the plan does not have."""
+        if self.menu.isEmpty():
+            self._make_menu()
+        for name, action in self._types.items():
+            action.setVisible(name not in self._store.plan.cables)
+
+    def _make_menu(self) -> None:
+        """Types by impedance, then a cable of one's own."""
         for impedance, types in by_impedance():
             group = self.menu.addMenu(impedance)
             group.setToolTipsVisible(True)
             for cable in types:
-                if cable.type in self._store.plan.cables:
-                    continue
-                action = group.addAction(button_text(offer(cable)))
+                action = self._types[cable.type] = group.addAction(button_text(offer(cable)))
                 action.setToolTip(tooltip(quality_sentence(cable)))
                 action.setEnabled(cable.offered)
                 action.triggered.connect(partial(self._take, cable.type))
@@ -92,15 +97,17 @@ class CableList(QWidget):
         self._store.edit(f"Add cable {name}", stocked(self._store.plan, name))
 
     def _ask_name(self) -> None:
-        self.own_name.show_text("")
-        self.own_name.show()
-        self.own_name.setFocus()
+        self.own.fill("", Around(self._store.plan))
+        self.own.restore()
+        self.own.show()
+        self.own.line.setFocus()
 
-    def _own_named(self, text: str) -> None:
+    def _own_named(self, text: str, turned: bool) -> None:
         plan, name = self._store.plan, edits.plain_text(text).strip()
-        self.own_name.hide()
         if not name or name in plan.cables:
+            self.own.refuse("A cable of this name is in the plan already." if name else "A cable wants a name.")
             return
+        self.own.hide()
         cable = Cable(z0_ohm=plan.reference_ohm, velocity_factor=FIRST_VELOCITY_FACTOR)
         self._store.edit(f"Add cable {name}", edits.with_cable(plan, name, cable))
         self._rows[name].open()

@@ -44,9 +44,9 @@ class PartCard(QWidget):
         layout.addStretch(1)
         self.set_look(look)
         store.plan_changed.connect(self._plan_changed)
-        store.selection_changed.connect(self._fill)
+        store.selection_changed.connect(self._show)
         store.answer_changed.connect(self._judge)
-        self._fill()
+        self._show()
 
     def set_look(self, look: Look) -> None:
         """Draw with another look."""
@@ -55,12 +55,17 @@ class PartCard(QWidget):
 
     def showEvent(self, event: QShowEvent) -> None:
         super().showEvent(event)
-        self._fill()
+        self._show()
 
     def _plan_changed(self, old: Plan, new: Plan) -> None:
         self._fill()
 
+    def _show(self) -> None:
+        self._fill()
+        self._judge()
+
     def _fill(self) -> None:
+        """Show what the plan says."""
         store = self._store
         if self.isHidden() or not store.selected:
             return
@@ -69,7 +74,6 @@ class PartCard(QWidget):
         self._several.setVisible(not one)
         if one:
             self._one.fill(store.plan.placed(store.selected[0]))
-            self._judge()
         else:
             self._several.fill([store.plan.placed(part_id).name for part_id in store.selected])
 
@@ -80,7 +84,8 @@ class PartCard(QWidget):
             return
         part_id = store.selected[0]
         if store.answer is not None:
-            head, rows = f"At {format_frequency(store.plan.band.marked_hz)}", figure_rows(store.answer, part_id)
+            head = f"At {format_frequency(store.answer.plan.band.marked_hz)}"
+            rows = figure_rows(store.answer, part_id)
         else:
             head, rows = f"Not solved: {(store.why_not or '').rstrip('.')}.", []
         self._one.figures.show_rows(head, rows)
@@ -227,8 +232,10 @@ def kind_and_place(plan: Plan, placed: Placed) -> str:
     kind = placed.part.LABEL
     if not names:
         return f"{kind}, joined to nothing"
+    free = len(mates) - len(names)
+    after = f", {free} port{'s' if free > 1 else ''} open" if free else ""
     if len(names) > MOST_NAMES:
-        return f"{kind} between {len(names)} parts"
+        return f"{kind} between {len(names)} parts{after}"
     if len(names) == 1:
-        return f"{kind} at {names[0]}"
-    return f"{kind} between {', '.join(names[:-1])} and {names[-1]}"
+        return f"{kind} at {names[0]}{after}"
+    return f"{kind} between {', '.join(names[:-1])} and {names[-1]}{after}"

@@ -49,6 +49,9 @@ class Editor(QWidget):
         """Show the plan's value again, whatever was typed."""
         raise NotImplementedError
 
+    def hold(self) -> None:
+        """Keep what was entered in sight, though the plan has not taken it yet."""
+
     def set_group(self, group: str) -> None:
         """Name what the field belongs to, for those who hear it."""
         raise NotImplementedError
@@ -65,6 +68,7 @@ class FieldEditor(Editor):
         self.fault = plain_label(role="fault")
         self._value: Any = None
         self._around: Around | None = None
+        self._held = False
         layout = QVBoxLayout(self)
         layout.setContentsMargins(0, 0, 0, 0)
         layout.setSpacing(2)
@@ -86,7 +90,7 @@ class FieldEditor(Editor):
     def fill(self, value: Any, around: Around) -> None:
         same = value == self._value
         self._value, self._around = value, around
-        if self.being_typed or (same and self.refused):
+        if self.being_typed or (same and (self.refused or self._held)):
             return
         self.restore()
 
@@ -94,7 +98,11 @@ class FieldEditor(Editor):
         set_text(self.fault, f"{SIGNS['fails']} {sentence}")
         self._mark(True)
 
+    def hold(self) -> None:
+        self._held = True
+
     def restore(self) -> None:
+        self._held = False
         self._mark(False)
         if self._around is not None:
             self.show_value(self._value, self._around)
@@ -139,9 +147,10 @@ class FieldEditor(Editor):
 
     def _enter(self, value: Any, turned: bool = False) -> None:
         """Offer a value; where nothing came of it but no refusal either, the plan's own text comes back."""
+        self._held = False
         self._mark(False)
         self.entered.emit(value, turned)
-        if not self.refused:
+        if not (self.refused or self._held):
             self.restore()
 
 

@@ -47,6 +47,7 @@ class FileEditor(FieldEditor):
 
     def show_value(self, value: Any, around: Around) -> None:
         self.button.setText("Load a Touchstone file…" if value is None else "Replace by another file…")
+        self.button.setAccessibleName(self.button.text() if value is None else f"Replace {value.name}")
         if value is None:
             set_text(self.label, self._name)
             self.say("No file yet.")

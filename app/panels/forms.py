@@ -15,6 +15,7 @@ from typing import Any
 from PySide6.QtCore import Signal
 from PySide6.QtWidgets import QVBoxLayout, QWidget
 
+from app.editing.wording import format_frequency
 from app.look import SIGNS
 from app.panels.around import Around
 from app.panels.editors import ChoiceEditor, Editor
@@ -23,15 +24,20 @@ from app.panels.tab_order import tab_through
 from feedlib.errors import FieldError, PlanError
 from feedlib.schema import Record, specs
 
+_MANY_HERTZ = re.compile(r"\b\d{4,}(\.\d+)?\b")
+
 
 def refusal(error: PlanError, cls: type[Record]) -> str:
     """The sentence of an error, with labels in place of the fields' names in the file."""
     labels = {name: spec.label for name, spec in specs(cls).items()}
     words = re.compile(r"\b(" + "|".join(map(re.escape, labels)) + r")\b") if labels else re.compile(r"(?!)")
-    reason = words.sub(lambda found: labels[found[0]].lower(), error.reason)
-    subject = labels.get((error.field or "").split(".")[0])
-    sentence = f"{subject} {reason}" if subject else reason[:1].upper() + reason[1:]
-    return sentence.rstrip(".") + "."
+    reason = words.sub(lambda found: labels[found[0]].lower(), error.reason).replace("_", " ")
+    field = (error.field or "").split(".")[0]
+    if field in labels and specs(cls)[field].unit == "Hz":
+        reason = _MANY_HERTZ.sub(lambda found: format_frequency(float(found[0])), reason)
+    if field in labels and reason.startswith(("wants ", "is ")):
+        reason = f"{labels[field]} {reason}"
+    return reason[:1].upper() + reason[1:].rstrip(".") + "."
 
 
 class RecordForm(QWidget):
@@ -58,8 +64,7 @@ class RecordForm(QWidget):
     def fill(self, record: Record, around: Around) -> None:
         """Show a record's values."""
         if record != self._record:
-            self._waiting.clear()
-            self._fault.hide()
+            self._forget()
         self._record = record
         inside = around.inside(record)
         for name, editor in self.editors.items():
@@ -67,8 +72,7 @@ class RecordForm(QWidget):
 
     def restore(self) -> None:
         """Show the plan's values again in every field."""
-        self._waiting.clear()
-        self._fault.hide()
+        self._forget()
         for editor in self.editors.values():
             editor.restore()
 
@@ -88,6 +92,13 @@ class RecordForm(QWidget):
         for editor in self.editors.values():
             editor.set_group(group)
 
+    def _forget(self) -> None:
+        """Drop what was waiting for another field."""
+        waiting, self._waiting = self._waiting, {}
+        for name in waiting:
+            self.editors[name].restore()
+        self._fault.hide()
+
     def _entered(self, name: str, value: Any, turned: bool) -> None:
         assert self._record is not None
         changes = {**self._waiting, name: value}
@@ -97,6 +108,7 @@ class RecordForm(QWidget):
         except FieldError as error:
             if error.field != name:
                 self._waiting = changes
+                self.editors[name].hold()
             self.refuse(error, name)
             return
         self._waiting = {}

@@ -93,9 +93,9 @@ class FrequencyAxes:
         self.axes.spines[:].set_visible(False)
         self.axes.tick_params(length=0, labelsize=ink.TEXT_POINTS, pad=6)
         self._figure = figure
-        self._wash = Rectangle((0, 0), 0, 0, linewidth=0, zorder=0.1)
-        self._no_go = [Rectangle((0, 0), 0, 0, linewidth=0, zorder=0.2, hatch="////") for _ in range(2)]
-        for patch in (self._wash, *self._no_go):
+        self.wash = Rectangle((0, 0), 0, 0, linewidth=0, zorder=0.1)
+        self.no_go = [Rectangle((0, 0), 0, 0, linewidth=0, zorder=0.2, hatch="////") for _ in range(2)]
+        for patch in (self.wash, *self.no_go):
             self.axes.add_patch(patch)
         across = self.axes.get_xaxis_transform()
         self.mark, self._hair = (
@@ -120,8 +120,8 @@ class FrequencyAxes:
         self.axes.set_facecolor(look.paper)
         self.axes.tick_params(colors=look.soft)
         self.axes.grid(True, color=look.hairline, linewidth=ink.THIN_POINTS)
-        self._wash.set_facecolor(look.band_wash)
-        for patch in self._no_go:
+        self.wash.set_facecolor(look.band_wash)
+        for patch in self.no_go:
             patch.set(facecolor=look.fails_wash, edgecolor=blend(look.fails_wash, look.fails, 0.35))
         self.mark.set_color(look.ink)
         self._hair.set_color(look.soft)
@@ -141,9 +141,9 @@ class FrequencyAxes:
         else:
             left, width = across.low, across.span
         below, above = (min(max(end, shown.low), shown.high) for end in ground.allowed)
-        self._wash.set_bounds(left, shown.low, width if ground.band_hz != ground.swept_hz else 0.0, shown.span)
-        self._no_go[0].set_bounds(left, shown.low, width, below - shown.low)
-        self._no_go[1].set_bounds(left, above, width, shown.high - above)
+        self.wash.set_bounds(left, shown.low, width if ground.band_hz != ground.swept_hz else 0.0, shown.span)
+        self.no_go[0].set_bounds(left, shown.low, width, below - shown.low)
+        self.no_go[1].set_bounds(left, above, width, shown.high - above)
         return True
 
     def set_curves(self, grid_hz: Array, mark_hz: float, curves: Sequence[Curve]) -> None:

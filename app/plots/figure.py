@@ -44,7 +44,7 @@ class Plot(QWidget):
         self._settle = QTimer(self)
         self._settle.setSingleShot(True)
         self._settle.setInterval(SETTLED_MS)
-        self._settle.timeout.connect(self._settled)
+        self._settle.timeout.connect(self.settle)
         self._build_header(words)
         self.build()
         self._wear()
@@ -105,6 +105,12 @@ class Plot(QWidget):
         """Bring the artists up to date when the plot is drawn next."""
         self._behind = True
         self.canvas.refresh()
+
+    def settle(self) -> None:
+        """Do at once what is put off until nothing has changed for a while."""
+        self._settle.stop()
+        if self._fill(settled=True):
+            self.canvas.redraw()
 
     def prepare(self) -> bool:
         """Bring the artists up to date; whether what stands still has changed."""
@@ -196,10 +202,6 @@ class Plot(QWidget):
         answer = self.store.answer
         self.nothing_to_show("cannot be solved yet" if answer is None else None)
         return self.fill(self.store.plan if answer is None else answer.plan, answer, settled=settled)
-
-    def _settled(self) -> None:
-        if self._fill(settled=True):
-            self.canvas.redraw()
 
     def _wear(self) -> None:
         palette = palette_of(self.look)

@@ -55,6 +55,11 @@ class PlotRow(QWidget):
         for plot in self.plots.values():
             plot.set_look(look)
 
+    def settle(self) -> None:
+        """Do at once what plots put off until nothing has changed for a while."""
+        for plot in self.plots.values():
+            plot.settle()
+
     def minimumSizeHint(self) -> QSize:
         """Room for one plot and the words; with less than all in sight the row asks for no more."""
         return self.plots["Match"].minimumSize() + QSize(0, self.tabs.sizeHint().height())

@@ -55,8 +55,8 @@ class SmithPlot(Plot):
         web += [reactance_arc(sign * x, r) for x, r in REACTANCES.items() for sign in (-1, 1)]
         gap = np.array([complex(np.nan, np.nan)])
         threads = np.concatenate([part for line in [*web, np.array([-1, 1 + 0j])] for part in (line, gap)])
-        self._limit = Polygon(np.zeros((1, 2)), closed=True, linewidth=0, zorder=0.1)
-        self.axes.add_patch(self._limit)
+        self.limit = Polygon(np.zeros((1, 2)), closed=True, linewidth=0, zorder=0.1)
+        self.axes.add_patch(self.limit)
         self._web = self.axes.add_line(Line2D(threads.real, threads.imag, linewidth=ink.THIN_POINTS, zorder=0.5))
         self._rim = self.axes.add_line(Line2D(rim.real, rim.imag, linewidth=ink.MARK_POINTS, zorder=0.6))
         self.strands: list[Strand] = []
@@ -66,7 +66,7 @@ class SmithPlot(Plot):
 
     def recolour(self) -> None:
         look = self.look
-        self._limit.set_facecolor(blend(look.paper, look.holds, 0.2))
+        self.limit.set_facecolor(blend(look.paper, look.holds, 0.2))
         self._web.set_color(look.hairline)
         self._rim.set_color(look.soft)
 
@@ -146,10 +146,10 @@ class SmithPlot(Plot):
         if ground == self._ground:
             return False
         self._ground = ground
-        self._limit.set_visible(limit_db is not None and source_ohm is not None)
+        self.limit.set_visible(limit_db is not None and source_ohm is not None)
         if limit_db is not None and source_ohm is not None:
             circle = limit_circle(limit_db, source_ohm, reference_ohm)
-            self._limit.set_xy(np.column_stack([circle.real, circle.imag]))
+            self.limit.set_xy(np.column_stack([circle.real, circle.imag]))
         return True
 
     def _px(self, gamma: ComplexArray) -> tuple[Array, Array]:

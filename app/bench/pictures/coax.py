@@ -6,11 +6,11 @@ import math
 
 import numpy as np
 from PySide6.QtCore import QPointF, QRectF, Qt
-from PySide6.QtGui import QColor, QPainter, QPolygonF
+from PySide6.QtGui import QColor, QPainter, QPen, QPolygonF
 
 from app.bench.pictures.base import Picture, Shown, one_line, pen, stubs
 from app.editing.wording import format_length
-from feedlib.conventions import guided_wavelength_m
+from feedlib.conventions import Array, guided_wavelength_m
 from feedlib.parts import Coax
 from feedlib.plan import Cable, Placed, Plan
 
@@ -19,7 +19,7 @@ UNIT_HEIGHT = 19.0
 TALLEST = 2.4
 TICK_DEG = 45.0
 TICK_PITCH = 5.0
-POINTS = 49
+POINTS = 33
 
 
 def electrical_deg(part: Coax, cable: Cable | None, frequency_hz: float) -> float:
@@ -50,17 +50,23 @@ class CoaxPicture(Picture):
         colour = look.impedance_colour(cable.z0_ohm) if cable else look.soft
         stubs(painter, self, shown)
         height = self._heights(shown)
-        xs = np.linspace(body.left(), body.right(), height.size)
-        outline = [QPointF(x, -y) for x, y in zip(xs, height, strict=True)]
-        outline += [QPointF(x, y) for x, y in zip(xs[::-1], height[::-1], strict=True)]
+        xs = np.linspace(body.left(), body.right(), height.size).tolist()
+        upper = [QPointF(x, -y) for x, y in zip(xs, height, strict=True)]
+        lower = [QPointF(x, y) for x, y in zip(xs, height, strict=True)]
         wash = QColor(colour)
         wash.setAlpha(70)
-        edge = pen(colour, 2.4 if shown.hovered else 1.5)
+        painter.setPen(Qt.PenStyle.NoPen)
+        painter.setBrush(wash)
+        painter.drawPolygon(QPolygonF(upper + lower[::-1]))
+        edge = QPen(QColor(colour), 2.6 if shown.hovered else 1.5)
+        edge.setJoinStyle(Qt.PenJoinStyle.BevelJoin)  # round joins make a stroke of many points several times dearer
         if cable is None:
             edge.setStyle(Qt.PenStyle.DashLine)
         painter.setPen(edge)
-        painter.setBrush(wash)
-        painter.drawPolygon(QPolygonF(outline))
+        painter.drawPolyline(QPolygonF(upper))
+        painter.drawPolyline(QPolygonF(lower))
+        for x, y in ((xs[0], height[0]), (xs[-1], height[-1])):
+            painter.drawLine(QPointF(x, -y), QPointF(x, y))
         painter.setPen(pen(colour, 2))
         painter.drawLine(QPointF(body.left(), 0), QPointF(body.right(), 0))
         self._ticks(painter, electrical_deg(part, cable, shown.plan.band.marked_hz), body)
@@ -82,12 +88,14 @@ class CoaxPicture(Picture):
             painter.drawLine(QPointF(x, -5), QPointF(x, 5))
 
     @staticmethod
-    def _heights(shown: Shown) -> np.ndarray[tuple[int], np.dtype[np.float64]]:
-        """Half-heights along the drawing, port 1 first."""
+    def _heights(shown: Shown) -> Array:
+        """Half-heights along the drawing, port 1 first; two are enough for a straight section."""
         wave = shown.answer.swell(shown.placed.id, POINTS) if shown.answer is not None else None
         if wave is None or wave[2] == 0:
             return np.full(2, UNIT_HEIGHT)
-        return np.minimum(np.abs(wave[1]) / abs(wave[2]), TALLEST) * UNIT_HEIGHT + 0.75
+        height: Array = np.minimum(np.abs(wave[1]) / abs(wave[2]), TALLEST) * UNIT_HEIGHT + 0.75
+        straight = np.abs(height - np.linspace(height[0], height[-1], height.size)).max() < 0.15
+        return height[[0, -1]] if straight else height
 
     def detail(self, shown: Shown) -> str:
         part = shown.placed.part
