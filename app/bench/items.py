@@ -188,7 +188,8 @@ class FlagItem(QGraphicsItem):
         self.update()
 
     def boundingRect(self) -> QRectF:
-        return rect
+        top = self._stem + self.HEIGHT
+        return QRectF(-self._width / 2 - 1, -top - 1, self._width + 2, top + 2)
 
     def paint(self, painter: QPainter, option: QStyleOptionGraphicsItem, widget: QWidget | None = None) -> None:
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)
