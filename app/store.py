@@ -170,9 +170,12 @@ class Store(QObject):
     def _put(self, plan: Plan) -> None:
         old, self.plan = self.plan, plan
         ids = {p.id for p in plan.parts}
-        if any(s not in ids for s in self.selected):
-            self.select(tuple(s for s in self.selected if s in ids))
+        kept = tuple(s for s in self.selected if s in ids)
+        gone = kept != self.selected
+        self.selected = kept  # views that follow the plan already see what is left of the selection
         self.plan_changed.emit(old, plan)
+        if gone:
+            self.selection_changed.emit()
         if _physics(old) != _physics(plan):
             self._solve()
 

@@ -14,7 +14,7 @@ from typing import Any, TypeVar
 
 import numpy as np
 
-from feedlib.conventions import Array, ComplexArray
+from feedlib.conventions import Array, ComplexArray, Index
 from feedlib.flows import Flows, LineValues, Network, network_of, standing_wave
 from feedlib.harness import MAX_BYTES, bytes_of, harness_s
 from feedlib.parts import Antenna, Radio
@@ -133,21 +133,23 @@ class Answer(Figures):
     def __init__(self, solved: Solved, points: int, channels: tuple[str, ...]) -> None:
         super().__init__(solved, slice(0, points))
         self.plan: Plan = solved.plan
-        self.mark = Figures(solved, slice(points, points + 1))
-        start = points + 3
+        start = points + 2
         self.channels: Mapping[str, Figures] = {
             name: Figures(solved, slice(start + n, start + n + 1)) for n, name in enumerate(channels)
         }
+        start += len(channels)
+        self.mark = Figures(solved, slice(start, start + 1))
 
     @cached_property
     def verdicts(self) -> tuple[Verdict, ...]:
         """Every limit that the plan sets, over the grid points inside the band, its edges and every channel."""
         solved, limits, band = self._solved, self.plan.limits, self.plan.band
         f, points = solved.frequency_hz, self.frequency_hz.size
-        inside = (f >= band.start_hz) & (f <= band.stop_hz)
-        inside[points] = False  # the mark alone is not judged
-        inside[points + 1 :] = True
-        judged = np.flatnonzero(inside)
+        judged: slice | Index = slice(0, f.size - 1)  # the mark alone, which stands last, is not judged
+        if self.plan.sweep is not None:
+            grid = (f[:points] >= band.start_hz) & (f[:points] <= band.stop_hz)
+            judged = np.concatenate([np.flatnonzero(grid), np.arange(points, f.size - 1)])
+            f = f[judged]
         found = []
         for limit, at_least in JUDGED.items():
             wanted = getattr(limits, limit)
@@ -157,7 +159,7 @@ class Answer(Figures):
             worst = int(np.argmin(figure) if at_least else np.argmax(figure))  # nan counts as the worst
             value = float(figure[worst])
             holds = value >= wanted if at_least else value <= wanted
-            found.append(Verdict(limit, wanted, value, float(f[judged[worst]]), bool(holds)))
+            found.append(Verdict(limit, wanted, value, float(f[worst]), bool(holds)))
         return tuple(found)
 
     @property
@@ -171,7 +173,7 @@ class Answer(Figures):
         (x from 0 to 1, V(x), forward wave's voltage at its entry); None where the radio does not reach. The entry
         is the side nearer the radio.
         """
-        return self._solved.swell(part_id, self.frequency_hz.size, points)
+        return self._solved.swell(part_id, points)
 
 
 JUDGED: dict[str, bool] = {
@@ -237,7 +239,7 @@ class Solved:
         power = _real_product(flows.v, flows.i)
         power *= _real_product(flows.scale, flows.scale)
         power *= 1 / self.radio.power_w
-        return power
+        return _frozen(power)
 
     @cached_property
     def reflected_share(self) -> Array:
@@ -282,10 +284,10 @@ class Solved:
         for placed, planes in zip(self.plan.parts, self.topology.planes, strict=True):
             if not isinstance(placed.part, Radio | Antenna):
                 (edge, sign), *rest = planes
-                lost = power[edge] * sign
+                lost = power[edge] if sign > 0 else -power[edge]
                 for edge, sign in rest:
-                    (np.add if sign > 0 else np.subtract)(lost, power[edge], out=lost)
-                found[placed.id] = _frozen(lost)
+                    lost = lost + power[edge] if sign > 0 else lost - power[edge]
+                found[placed.id] = lost
         return found
 
     @staticmethod
@@ -340,30 +342,30 @@ class Solved:
         with np.errstate(divide="ignore"):
             return _frozen(-20 * np.log10(loudest) + 0.0)
 
-    def swell(self, part_id: str, at: int, points: int) -> tuple[Array, ComplexArray, complex] | None:
+    def swell(self, part_id: str, points: int) -> tuple[Array, ComplexArray, complex] | None:
         topology, plan = self.topology, self.plan
         index = next(n for n, p in enumerate(plan.parts) if p.id == part_id)
         part = plan.parts[index].part
         assert isinstance(part, Lines)
         number = getattr(part, "main_line", 0)
-        planes = topology.line_planes.get((index, number))
+        planes = topology.line_planes.get((index, number), topology.planes[index])
         far = topology.far[index][0]
-        if planes is None or far == 0:
+        if far == 0:
             return None
         cable = getattr(part, "cable", None)
         line = part.lines(None if cable is None else plan.cables[cable])[number]
-        first, second = (self._at_plane(edge, sign, at) for edge, sign in planes)
-        f = float(self.frequency_hz[at])
+        first, second = (self._at_plane(edge, sign) for edge, sign in planes)
+        f = float(self.frequency_hz[-1])
         # The current runs from near to far; where it runs into port 1, port 1 is the entry.
         if topology.planes[index][0][1] == far:
             return standing_wave(first, (second[0], -second[1]), line, f, points)
         x, along, forward = standing_wave(second, (first[0], -first[1]), line, f, points)
         return x, along[::-1], forward
 
-    def _at_plane(self, edge: int, sign: int, at: int) -> tuple[ComplexArray, ComplexArray]:
-        """Voltage, and current into the line, at one frequency."""
-        scale = self.flows.scale[..., edge, at]
-        return scale * self.flows.v[..., edge, at], sign * scale * self.flows.i[..., edge, at]
+    def _at_plane(self, edge: int, sign: int) -> tuple[ComplexArray, ComplexArray]:
+        """Voltage, and current into the line, at the mark."""
+        scale = self.flows.scale[..., edge, -1]
+        return scale * self.flows.v[..., edge, -1], sign * scale * self.flows.i[..., edge, -1]
 
 
 def _turned(z_ohm: ComplexArray) -> ComplexArray:

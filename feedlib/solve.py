@@ -20,10 +20,10 @@ def solve(plan: Plan, topology: Topology | None = None) -> Answer:
     topology : that of an earlier plan, used again when it still fits.
     """
     radio = _only_radio(plan)
-    grid_hz = plan.grid_hz()
-    band = plan.band
-    rest_hz = [band.marked_hz, band.start_hz, band.stop_hz, *(c.hz for c in plan.channels)]
-    frequency_hz = np.concatenate([grid_hz, rest_hz])
+    grid_hz, band = plan.grid_hz(), plan.band
+    frequency_hz = np.concatenate(
+        [grid_hz, [band.start_hz, band.stop_hz], [c.hz for c in plan.channels], [band.marked_hz]]
+    )
     _refuse_uncovered(plan, frequency_hz)
     _refuse_missing_cables(plan)
     if topology is None or not topology.fits(plan):

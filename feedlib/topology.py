@@ -97,7 +97,7 @@ class Topology:
     cascaded : edges with a state; edges : all, those inside cores last; one more row, always zero, serves the rest.
     planes : per part of the plan, per port: its edge, and +1 where the edge's current flows into the part.
     ports : by name, the part and number (from 0) of each port. far : like planes: +1 where the edge's current runs
-    from near to far, 0 where the radio does not reach. line_planes : the same planes for each line.
+    from near to far, 0 where the radio does not reach. line_planes : the planes of lines that are one of several.
     """
 
     shape: Shape
@@ -329,7 +329,9 @@ class _Compiler:
             planes=planes,
             ports=ports,
             far=self._far(planes),
-            line_planes={(e.part, e.line or 0): (self._plane_of(e, 0), self._plane_of(e, 1)) for e in lines},
+            line_planes={
+                (e.part, e.line or 0): (self._plane_of(e, 0), self._plane_of(e, 1)) for e in lines if self._is_inside(e)
+            },
         )
 
     def _plane(self, element: int, terminal: int) -> Plane:
@@ -342,6 +344,11 @@ class _Compiler:
         if target == element and edge in self.tied_to_itself:
             return self.number[edge], 1 if edges.index(edge) != terminal else -1
         return self.number[edge], 1 if target == element else -1
+
+    def _is_inside(self, element: Element) -> bool:
+        """Whether a line is one of several of its part, so that its planes are not the part's ports."""
+        part = self.plan.parts[element.part].part
+        return isinstance(part, Lines) and part.line_count > 1
 
     def _plane_of(self, element: Element, terminal: int) -> Plane:
         edge = element.edges[terminal]

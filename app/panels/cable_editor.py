@@ -23,7 +23,7 @@ class CableEditor(FieldEditor):
         super().__init__(label, self.box, wide=True)
         self._listed: tuple[str, ...] | None = None
         self.box.activated.connect(self._chosen)
-        self.box.restored.connect(self.restore)
+        self.box.restored.connect(self._drop)
 
     def show_value(self, value: Any, around: Around) -> None:
         names = tuple(around.plan.cables)

@@ -206,6 +206,7 @@ class _SeveralParts(QWidget):
         self._store = store
         self._head, self._names = plain_label(role="title"), plain_label(role="soft")
         self._delete = QPushButton("Delete")
+        self._delete.setAccessibleName("Delete the selected parts")
         self._delete.clicked.connect(self._delete_all)
         layout = QVBoxLayout(self)
         layout.setContentsMargins(0, 0, 0, 0)
@@ -218,7 +219,6 @@ class _SeveralParts(QWidget):
         set_text(self._head, f"{len(names)} parts selected")
         more = len(names) - MOST_NAMES
         set_text(self._names, ", ".join(names[:MOST_NAMES]) + (f" and {more} more" if more > 0 else ""))
-        self._delete.setAccessibleName(f"Delete {len(names)} parts")
 
     def _delete_all(self) -> None:
         selected = self._store.selected

@@ -17,6 +17,9 @@ from PySide6.QtWidgets import QComboBox, QLineEdit, QPlainTextEdit
 
 from app.panels.style import plain_label, set_text
 
+NOTCH = 120
+"""One notch of a wheel in Qt's eighths of a degree."""
+
 
 class LineField(QLineEdit):
     """A line of text: `typed` once on Enter or when the focus leaves, `restored` on Esc."""
@@ -67,6 +70,24 @@ class LineField(QLineEdit):
         if self.isModified():
             self.setModified(False)
             self.typed.emit(self.text())
+
+
+class TurnedField(LineField):
+    """A line that the wheel turns as long as `turns` is set: `turned`(notches, modifiers)."""
+
+    turned = Signal(float, object)
+
+    def __init__(self, name: str) -> None:
+        super().__init__(name)
+        self.turns = False
+
+    def wheelEvent(self, event: QWheelEvent) -> None:
+        if not self.turns or self.isModified():
+            event.ignore()
+            return
+        event.accept()
+        # With Alt held down some systems report the wheel as turned sideways.
+        self.turned.emit((event.angleDelta().y() or event.angleDelta().x()) / NOTCH, event.modifiers())
 
 
 class ChoiceBox(QComboBox):

@@ -6,10 +6,9 @@ An editor reads and shows; it never changes a plan. Knows no kinds of part.
 from __future__ import annotations
 
 from collections.abc import Mapping
-from typing import Any
+from typing import Any, ClassVar
 
 from PySide6.QtCore import Qt, Signal
-from PySide6.QtGui import QWheelEvent
 from PySide6.QtWidgets import QHBoxLayout, QVBoxLayout, QWidget
 
 from app.editing.entry import EntryError, read_complex_ohm, read_length_m, read_quantity
@@ -24,18 +23,17 @@ from app.editing.wording import (
 )
 from app.look import SIGNS
 from app.panels.around import Around
-from app.panels.controls import ChoiceBox, LineField, NoteField
+from app.panels.controls import ChoiceBox, LineField, NoteField, TurnedField
 from app.panels.style import plain_label, set_text
 
 LABEL_WIDTH = 108
-NOTCH = 120
-"""One notch of a wheel in Qt's eighths of a degree."""
 
 
 class Editor(QWidget):
-    """A field. `entered`(value, turned): a value that was read; turned : by the wheel, one of many."""
+    """A field. `entered`(value, turned): a value that was read; turned : by the wheel, one of many. `dropped`: Esc."""
 
     entered = Signal(object, bool)
+    dropped = Signal()
 
     def fill(self, value: Any, around: Around) -> None:
         """Show the plan's value; what is being typed, and what was refused, stays."""
@@ -145,6 +143,10 @@ class FieldEditor(Editor):
         self.control.style().unpolish(self.control)
         self.control.style().polish(self.control)
 
+    def _drop(self) -> None:
+        self.restore()
+        self.dropped.emit()
+
     def _enter(self, value: Any, turned: bool = False) -> None:
         """Offer a value; where nothing came of it but no refusal either, the plan's own text comes back."""
         self._held = False
@@ -157,15 +159,17 @@ class FieldEditor(Editor):
 class TextEditor(FieldEditor):
     """A value written in one line. optional : an empty line is None."""
 
+    LINE: ClassVar[type[LineField]] = LineField
+
     def __init__(
         self, label: str, *, optional: bool = False, wide: bool = False, hint: str = "", placeholder: str = ""
     ) -> None:
-        self.line = LineField(label)
+        self.line = self.LINE(label)
         self.line.setPlaceholderText(placeholder)
         super().__init__(label, self.line, wide=wide, hint=hint)
         self._optional = optional
         self.line.typed.connect(self._typed)
-        self.line.restored.connect(self.restore)
+        self.line.restored.connect(self._drop)
 
     def read(self, text: str, around: Around) -> Any:
         """The value that a text says (EntryError)."""
@@ -231,9 +235,13 @@ class ImpedanceEditor(TextEditor):
 class LengthEditor(TextEditor):
     """A length; the wheel turns it, and the line under it says it in degrees, wavelengths and picoseconds."""
 
+    LINE = TurnedField
+
     def __init__(self, label: str, **look: Any) -> None:
         super().__init__(label, wide=True, **look)
         self._notches = 0.0
+        assert isinstance(self.line, TurnedField)
+        self.line.turned.connect(self._turned)
 
     def read(self, text: str, around: Around) -> float:
         return read_length_m(text, frequency_hz=around.frequency_hz, velocity_factor=around.velocity_factor)
@@ -243,6 +251,8 @@ class LengthEditor(TextEditor):
 
     def show_value(self, value: Any, around: Around) -> None:
         super().show_value(value, around)
+        assert isinstance(self.line, TurnedField)
+        self.line.turns = value is not None and around.velocity_factor is not None
         if value is None:
             return
         known: dict[str, Any] = {"frequency_hz": around.frequency_hz, "velocity_factor": around.velocity_factor}
@@ -253,23 +263,20 @@ class LengthEditor(TextEditor):
         angle = f"{format_length(value, 'deg', **known)} at {format_frequency(around.frequency_hz)}"
         self.say(" · ".join([angle, format_length(value, "wl", **known), format_length(value, "ps", **known)]))
 
-    def wheelEvent(self, event: QWheelEvent) -> None:
+    def _turned(self, notches: float, modifiers: Qt.KeyboardModifier) -> None:
         """A notch is one step, with Shift ten, with Alt a tenth of one."""
-        around, over_line = self._around, self.line.geometry().contains(event.position().toPoint())
-        if not over_line or self.being_typed or self._value is None or not (around and around.velocity_factor):
-            event.ignore()
-            return
-        event.accept()
-        # With Alt held down some systems report the wheel as turned sideways.
-        self._notches += (event.angleDelta().y() or event.angleDelta().x()) / NOTCH
+        around = self._around
+        assert around is not None
+        assert around.velocity_factor is not None
+        self._notches += notches
         whole = int(self._notches)
         if not whole:
             return
         self._notches -= whole
         step_m = wheel_step_m(frequency_hz=around.frequency_hz, velocity_factor=around.velocity_factor)
-        if event.modifiers() & Qt.KeyboardModifier.ShiftModifier:
+        if modifiers & Qt.KeyboardModifier.ShiftModifier:
             step_m *= 10
-        elif event.modifiers() & Qt.KeyboardModifier.AltModifier:
+        elif modifiers & Qt.KeyboardModifier.AltModifier:
             step_m /= 10
         self._enter(max(0.0, round(self._value + whole * step_m, 9)), turned=True)
 
@@ -283,7 +290,7 @@ class ChoiceEditor(FieldEditor):
         self._values = list(words)
         self.box.addItems(list(words.values()))
         self.box.activated.connect(self._chosen)
-        self.box.restored.connect(self.restore)
+        self.box.restored.connect(self._drop)
 
     def show_value(self, value: Any, around: Around) -> None:
         self.box.setCurrentIndex(self._values.index(value))
@@ -300,7 +307,7 @@ class NoteEditor(FieldEditor):
         super().__init__(label, self.text, wide=True)
         self.text.setAccessibleName(label)
         self.text.typed.connect(self._enter)
-        self.text.restored.connect(self.restore)
+        self.text.restored.connect(self._drop)
 
     def show_value(self, value: Any, around: Around) -> None:
         if value != self.text.toPlainText():

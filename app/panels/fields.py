@@ -89,7 +89,7 @@ class WayEditor(ChosenEditor):
         spec = specs(AntennaImpedance)[which]
         # None says "given in another way" here, so no field of a way may be left empty.
         bare = typing.get_args(_hints(AntennaImpedance)[which])[0]
-        return editor_for(which, bare, replace(spec, label="") if which == "fixed_ohm" else spec)
+        return editor_for(which, bare, replace(spec, label="Value") if which == "fixed_ohm" else spec)
 
 
 def _entry(hint: Any) -> ChosenEditor:

@@ -57,14 +57,17 @@ class RecordForm(QWidget):
         for name, editor in editors.items():
             layout.addWidget(editor)
             editor.entered.connect(partial(self._entered, name))
+            editor.dropped.connect(self._dropped)
         self._fault = plain_label(role="fault")
         self._fault.hide()
         layout.addWidget(self._fault)
 
     def fill(self, record: Record, around: Around) -> None:
         """Show a record's values."""
-        if record != self._record:
-            self._forget()
+        for name in [n for n in self._waiting if getattr(record, n) != getattr(self._record, n)]:
+            del self._waiting[name]
+        if record != self._record and not self._waiting:
+            self._fault.hide()
         self._record = record
         inside = around.inside(record)
         for name, editor in self.editors.items():
@@ -72,7 +75,8 @@ class RecordForm(QWidget):
 
     def restore(self) -> None:
         """Show the plan's values again in every field."""
-        self._forget()
+        self._waiting = {}
+        self._fault.hide()
         for editor in self.editors.values():
             editor.restore()
 
@@ -92,27 +96,37 @@ class RecordForm(QWidget):
         for editor in self.editors.values():
             editor.set_group(group)
 
-    def _forget(self) -> None:
-        """Drop what was waiting for another field."""
-        waiting, self._waiting = self._waiting, {}
-        for name in waiting:
-            self.editors[name].restore()
-        self._fault.hide()
-
     def _entered(self, name: str, value: Any, turned: bool) -> None:
         assert self._record is not None
-        changes = {**self._waiting, name: value}
+        together = {**self._waiting, name: value}
         self._fault.hide()
         try:
-            replace(self._record, **changes)
+            replace(self._record, **together)
         except FieldError as error:
-            if error.field != name:
-                self._waiting = changes
+            if self._holds_alone(name, value):
+                self.entered.emit({name: value}, turned)
+                return
+            if not _out_of_range(self._cls, name, value):
+                self._waiting = together
                 self.editors[name].hold()
             self.refuse(error, name)
             return
         self._waiting = {}
-        self.entered.emit(changes, turned)
+        self.entered.emit(together, turned)
+
+    def _holds_alone(self, name: str, value: Any) -> bool:
+        """Whether a value can be taken while others go on waiting."""
+        assert self._record is not None
+        try:
+            replace(self._record, **{name: value})
+        except FieldError:
+            return False
+        return name not in self._waiting
+
+    def _dropped(self) -> None:
+        """Esc in one field gives up what waits in others too."""
+        if self._waiting:
+            self.restore()
 
 
 class RecordEditor(Editor):
@@ -162,6 +176,7 @@ class ChosenEditor(Editor):
         self._layout.setSpacing(6)
         self._layout.addWidget(self.choice)
         self.choice.entered.connect(self._choose)
+        self.choice.dropped.connect(self.restore)
 
     def chosen(self, value: Any) -> Any:
         """Which choice a value is."""
@@ -302,6 +317,12 @@ class EachEditor(Editor):
 
     def _entered(self, number: int, value: Any, turned: bool) -> None:
         self.entered.emit((*self._value[:number], value, *self._value[number + 1 :]), turned)
+
+
+def _out_of_range(cls: type[Record], name: str, value: Any) -> bool:
+    """Whether a number is refused by its own range, whatever the other fields are."""
+    number = value.real if isinstance(value, complex) else value
+    return isinstance(number, int | float) and specs(cls)[name].why_not(number) is not None
 
 
 def _named(*words: str) -> str:

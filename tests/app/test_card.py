@@ -5,7 +5,6 @@ from __future__ import annotations
 import json
 import math
 import os
-from collections.abc import Iterator
 from pathlib import Path
 from typing import Any
 
@@ -23,6 +22,7 @@ from PySide6.QtWidgets import (
 )
 from pytestqt.qtbot import QtBot
 
+from app.editing import edits
 from app.look import DARK, LIGHT, Look
 from app.panels.card import PartCard, kind_and_place
 from app.panels.controls import LineField, NoteField
@@ -31,7 +31,7 @@ from app.panels.tab_order import controls
 from app.store import Store
 from feedlib import Plan
 from feedlib.parts import KINDS, Antenna, Coax, Lumped, Splitter
-from feedlib.plan import Port
+from feedlib.plan import Cable, Port
 from feedlib.plan_file import parse_plan
 
 os.environ.setdefault("QT_QPA_PLATFORM", "offscreen")
@@ -156,8 +156,8 @@ class Shown:
 
 
 @pytest.fixture
-def shown(qtbot: QtBot) -> Iterator[Shown]:
-    yield Shown(qtbot, Store(plan()))
+def shown(qtbot: QtBot) -> Shown:
+    return Shown(qtbot, Store(plan()))
 
 
 def wheel(over: QWidget, notches: int, modifier: Qt.KeyboardModifier = Qt.KeyboardModifier.NoModifier) -> None:
@@ -187,7 +187,7 @@ def wheel(over: QWidget, notches: int, modifier: Qt.KeyboardModifier = Qt.Keyboa
 def test_every_kind_has_a_card_that_fits_its_width(qtbot: QtBot, kind: str, look: Look) -> None:
     store = Store(plan())
     shown = Shown(qtbot, store, look)
-    part_id = next(p.id for p in store.plan.parts if p.part.KIND == kind)
+    part_id = next(p.id for p in store.plan.parts if kind == p.part.KIND)
     shown.select(part_id)
     assert shown.line("Name").text() == part_id
     for widget in shown.card.findChildren(QWidget):
@@ -309,10 +309,11 @@ def test_a_bad_value_says_why_and_stays_for_mending(shown: Shown) -> None:
     assert shown.line("Length").text() == "62 mmm"
     (sentence,) = [t for t in shown.texts() if t.startswith("✗")]
     assert "'mmm' is not a unit here" in sentence
-    shown.store.hover("A")
-    shown.write("Id", "leg B")  # another field is taken; the bad one belongs to the part and stays
+    shown.write("Name", "leg B")  # another field is taken; the bad one still waits
+    assert shown.line("Length").text() == "62 mmm"
+    assert sentence in shown.texts()
     shown.select("match A")
-    shown.select("leg B")
+    shown.select("match B")
     assert not [t for t in shown.texts() if t.startswith("✗")]
     assert shown.line("Length").text() != "62 mmm"
 
@@ -391,10 +392,13 @@ def test_two_fields_that_must_change_together(shown: Shown) -> None:
     shown.select("lumped")
     shown.write("Resistance", "")
     assert shown.part("lumped").r_ohm == 10
-    assert "✗ Wants at least one of resistance, inductance, capacitance." in shown.texts()
+    assert "✗ Resistance wants at least one of resistance, inductance, capacitance." in shown.texts()
+    shown.write("Name", "coil")  # the empty line still waits
+    assert shown.line("Resistance").text() == ""
     shown.write("Capacitance", "1 pF")
     assert shown.part("lumped") == Lumped(place="series", c_f=1e-12)
-    assert shown.store.stack.count() == 1
+    assert shown.store.stack.count() == 2
+    assert not [t for t in shown.texts() if t.startswith("✗")]
 
 
 def test_a_form_that_needs_a_centre_waits_for_it(shown: Shown) -> None:
@@ -421,8 +425,6 @@ def test_a_choice_that_waits_is_dropped_on_escape(shown: Shown) -> None:
 def test_what_is_being_written_is_not_overwritten(shown: Shown) -> None:
     shown.select("match B")
     shown.write("Length", "70", enter=False)
-    from app.editing import edits
-
     store = shown.store
     store.edit("elsewhere", edits.changed_part(store.plan, "match B", cable="50 thin", length_m=0.05))
     assert shown.line("Length").text() == "70"
@@ -546,4 +548,185 @@ def test_an_end_of_a_coax(shown: Shown) -> None:
 
 def test_an_antenna_in_three_ways(shown: Shown, tmp_path: Path) -> None:
     shown.select("A")
-    shown.choose_first("Impedance", "resonant") if hasattr(shown, "choose_first") else None
+    shown.write("Impedance, Value", "40 + j10")
+    assert shown.part("A").impedance.fixed_ohm == 40 + 10j
+    shown.choose("Impedance", "resonant")
+    assert (shown.part("A").impedance.resonant.r_ohm, shown.part("A").impedance.resonant.f0_hz) == (40, F_HZ)
+    shown.write("Impedance, Resonant, Q", "12")
+    assert shown.part("A").impedance.resonant.q == 12
+    shown.choose("Impedance", "measured file")
+    assert shown.part("A").impedance.resonant is not None, "there is no file yet"
+    assert "No file yet." in shown.texts()
+    shown.qtbot.keyClick(shown.control("Impedance"), Qt.Key.Key_Escape)
+    assert shown.control("Impedance").currentText() == "resonant"
+    shown.choose("Impedance", "measured file")
+    load_file(shown, "Load a Touchstone file…", tmp_path / "dipole.s1p", ONE_PORT)
+    file = shown.part("A").impedance.touchstone
+    assert (file.name, file.text) == ("dipole.s1p", ONE_PORT)
+    assert "Measured: dipole.s1p" in shown.texts()
+    assert "1 port, 800 MHz to 900 MHz, 2 points" in shown.texts()
+    shown.choose("Impedance", "fixed")
+    assert shown.part("A").impedance.fixed_ohm == 50
+
+
+def test_wanted_current(shown: Shown) -> None:
+    shown.select("B")
+    shown.write("Wanted current, Wanted amplitude", "0.5")
+    shown.write("Wanted current, Wanted phase", "-90")
+    antenna = shown.part("B")
+    assert isinstance(antenna, Antenna)
+    assert (antenna.target.amplitude, antenna.target.phase_deg) == (0.5, -90)
+
+
+def test_a_measured_file_is_replaced_or_refused(shown: Shown, tmp_path: Path) -> None:
+    shown.select("measured")
+    assert "File: filter.s1p" in shown.texts()
+    load_file(shown, "Replace filter.s1p", tmp_path / "broken.s1p", "# MHz S RI R 50\n800 0.1\n")
+    assert shown.part("measured").touchstone.name == "filter.s1p"
+    (sentence,) = [t for t in shown.texts() if t.startswith("✗")]
+    assert "broken.s1p" in sentence
+    assert "line 2" in sentence
+    two_port = "# MHz S RI R 50\n800 0 0 1 0 1 0 0 0\n"
+    load_file(shown, "Replace filter.s1p", tmp_path / "through.s2p", two_port)
+    assert shown.part("measured").ports == 2
+    assert not [t for t in shown.texts() if t.startswith("✗ b")]
+
+
+def load_file(shown: Shown, button: str, path: Path, text: str) -> None:
+    """Press a button and choose a file of that text."""
+    path.write_text(text)
+    shown.qtbot.mouseClick(shown.control(button), Qt.MouseButton.LeftButton)
+    (dialog,) = [d for d in shown.card.findChildren(QFileDialog) if d.isVisible()]
+    dialog.selectFile(str(path))
+    name = dialog.findChild(QLineEdit, "fileNameEdit")
+    assert isinstance(name, QLineEdit)
+    name.setText(str(path))
+    shown.qtbot.keyClick(name, Qt.Key.Key_Return)
+    QApplication.processEvents()
+
+
+# Names, ids, notes, many parts
+
+
+def test_a_name_and_a_note(shown: Shown) -> None:
+    shown.select("match B")
+    shown.write("Name", "Northern match")
+    assert shown.store.plan.placed("match B").label == "Northern match"
+    note = shown.control("Note")
+    note.setFocus()
+    shown.qtbot.keyClicks(note, "brown drum")
+    shown.qtbot.keyClick(note, Qt.Key.Key_Tab)
+    assert shown.store.plan.placed("match B").note == "brown drum"
+    shown.write("Name", "match B")
+    assert shown.store.plan.placed("match B").label == "", "a name like the id is no name"
+    note.setFocus()
+    shown.qtbot.keyClicks(note, " and more")
+    shown.qtbot.keyClick(note, Qt.Key.Key_Escape)
+    assert note.toPlainText() == "brown drum"
+
+
+def test_a_new_id_keeps_joins_and_selection(shown: Shown) -> None:
+    shown.select("match B")
+    shown.write("Id", "leg 2")
+    assert shown.store.selected == ("leg 2",)
+    assert shown.store.plan.mate(Port("leg 2", 1)) == Port("T1", 3)
+    assert shown.line("Id").text() == "leg 2"
+
+
+@pytest.mark.parametrize(
+    ("text", "sentence"),
+    [
+        ("leg:2", "✗ An id has no ':' and no control characters."),
+        ("match A", "✗ Two parts have this id."),
+        ("", "✗ An id has 1 to 64 characters, got 0."),
+    ],
+)
+def test_an_id_that_cannot_be(shown: Shown, text: str, sentence: str) -> None:
+    shown.select("match B")
+    shown.write("Id", text)
+    assert sentence in shown.texts()
+    assert shown.line("Id").text() == text
+    assert [p.id for p in shown.store.plan.parts][:4] == ["radio", "T1", "match A", "match B"]
+
+
+def test_several_parts_in_short(shown: Shown) -> None:
+    shown.select("match A", "match B", "pad")
+    assert "3 parts selected" in shown.texts()
+    assert "match A, match B, pad" in shown.texts()
+    (delete,) = [b for b in shown.card.findChildren(QPushButton) if b.isVisible()]
+    shown.qtbot.mouseClick(delete, Qt.MouseButton.LeftButton)
+    assert not {"match A", "match B", "pad"} & {p.id for p in shown.store.plan.parts}
+    assert shown.store.plan.mate(Port("A", 1)) == Port("T1", 2), "the chain heals"
+    assert shown.store.selected == ()
+
+
+# Figures at the mark: 112.5 ohm at each match, 56.25 at the T, |reflection| = 6.25/106.25
+
+
+def test_figures_of_a_coax(shown: Shown) -> None:
+    shown.select("match A")
+    share = (1 - (6.25 / 106.25) ** 2) / 2
+    figures = shown.figures()
+    assert figures["sees"] == "50 + j0 Ω"
+    assert float(figures["shows"].removesuffix(" + j0 Ω")) == pytest.approx(112.5, abs=0.5)
+    assert figures["highest voltage"] == f"{math.sqrt(share * 112.5):.2f} V"
+    assert "loses" not in figures
+
+
+def test_figures_of_a_lossy_coax(shown: Shown) -> None:
+    # A 50 ohm line of 0.3 dB into 50 ohm loses 0.3 dB and 1 - 10^-0.03 = 6.67 % of what enters it.
+    store = shown.store
+    lossy = Cable(z0_ohm=50, velocity_factor=0.695, dielectric_db_per_100m=0.1)
+    p = edits.with_cable(store.plan, "50 thin", lossy)
+    p = edits.changed_part(p, "match A", cable="50 thin", length_m=30 / 86.8)
+    store.edit("lossy", edits.changed_part(p, "match B", cable="50 thin", length_m=30 / 86.8))
+    store.solve_now()
+    shown.select("match A")
+    assert shown.figures()["loses"] == "0.30 dB"
+    # Both see 50 ohm: 25 at the T, |reflection| = 1/3, each takes (1 - 1/9)/2 of the power.
+    assert f"{100 * (1 - 10**-0.03) * 4 / 9:.1f} % of the power" in shown.texts()
+
+
+def test_figures_of_an_antenna(shown: Shown) -> None:
+    shown.select("B")
+    share = (1 - (6.25 / 106.25) ** 2) / 2
+    figures = shown.figures()
+    assert figures["impedance"] == "50 + j0 Ω"
+    assert figures["current"] == f"{1e3 * math.sqrt(share / 50):.1f} mA"
+    assert figures["phase"] == "−90.0°"
+    assert figures["takes"] == f"{100 * share:.1f} % of the power"
+
+
+def test_figures_of_the_radio_and_the_joint(shown: Shown) -> None:
+    shown.select("radio")
+    figures = shown.figures()
+    assert figures["return loss"] == f"{-20 * math.log10(6.25 / 106.25):.1f} dB"
+    assert float(figures["VSWR"]) == pytest.approx(56.25 / 50, abs=0.005)
+    shown.select("T1")
+    figures = shown.figures()
+    assert figures["sees"].startswith("56.")
+    assert set(figures) == {"sees", "at port 2", "at port 3"}
+
+
+def test_figures_follow_the_wheel(shown: Shown) -> None:
+    shown.select("match A")
+    before = shown.figures()["shows"]
+    wheel(shown.line("Length"), 10, Qt.KeyboardModifier.ShiftModifier)
+    QApplication.processEvents()
+    assert shown.figures()["shows"] != before
+
+
+def test_a_part_that_the_radio_does_not_reach(shown: Shown) -> None:
+    shown.select("pad")
+    assert shown.figures()["from the radio"] == "not reached"
+    assert "sees" not in shown.figures()
+    assert "Port 1 is tied to nothing." in shown.texts()
+    assert "Join it, or leave it open." in shown.texts()
+
+
+def test_a_plan_that_is_not_solved_says_why(shown: Shown) -> None:
+    shown.select("match A")
+    shown.store.edit("away", edits.removed(shown.store.plan, ["radio"]))
+    QApplication.processEvents()
+    (sentence,) = [t for t in shown.texts() if t.startswith("Not solved: ")]
+    assert "radio" in sentence

@@ -17,7 +17,6 @@ from app.look import DARK, LIGHT
 from app.plots.currents import CurrentsPlot
 from app.plots.figure import Plot
 from app.plots.match import MatchPlot
-from app.plots.row import PlotRow
 from app.plots.smith import SmithPlot
 from app.store import Store
 from feedlib.plan import Limits, Plan
@@ -49,7 +48,7 @@ def alone(z_ohm: complex, limits: dict[str, float] | None = None, sweep: bool = 
 
 @pytest.fixture
 def show(qtbot):
-    """Show a plot of a kind, or the row, for a plan."""
+    """Show a plot of a kind for a plan."""
 
     def shown(kind, plan, look=LIGHT, size=(400, 300)):
         widget = kind(Store(plan), look)
@@ -209,7 +208,9 @@ def test_names_are_shown_as_written_and_followed_without_a_new_answer(show):
     plot.store.edit("Name", edits.labelled(plot.store.plan, "A", label="$x_1$ up\nhigh"))
     painted(plot)
     assert plot.store.answer is answer
-    assert plot.axes.strands[0].name.get_text() == "$x_1$ up hi…"
+    name = plot.axes.strands[0].name
+    assert name.get_text() == "$x_1$ up hi…"
+    assert not name.get_parse_math()
 
 
 def test_names_of_equal_curves_are_pushed_apart(show):
@@ -326,11 +327,13 @@ def test_a_small_change_moves_the_curve_before_the_same_background(show):
 def test_the_axis_grows_at_once_and_gives_room_back_when_settled(show, qtbot):
     plot = show(MatchPlot, alone(100))
     assert plot.axes.axes.get_ylim()[1] < 20
+    background = plot.canvas.background
     plot.store.edit("Turn", edits.changed_part(plot.store.plan, "A", impedance=alone(51).placed("A").part.impedance))
     plot.store.solve_now()
     painted(plot)
     high = plot.axes.axes.get_ylim()[1]
     assert high > 20 * np.log10(101)
+    assert plot.canvas.background is not background
     plot.store.stack.undo()
     plot.store.solve_now()
     painted(plot)
@@ -373,65 +376,6 @@ def test_limits_taken_away_are_no_longer_drawn(show):
     painted(plot)
     assert plot.store.plan.limits == Limits()
     assert not plot.limit.get_visible()
-
-
-# The row
-
-
-def shown_titles(row: PlotRow) -> list[str]:
-    return [title for title, plot in row.plots.items() if plot.isVisible()]
-
-
-def test_a_plot_takes_the_whole_row_and_gives_it_back(show, qtbot):
-    row = show(PlotRow, on_a_tee(50, 100), size=(1120, 300))
-    assert shown_titles(row) == ["Match", "Currents", "Smith chart"]
-    assert len({plot.width() for plot in row.plots.values()} | {1120 // 3}) <= 2
-    assert not row.tabs.isVisible()
-    currents = row.plots["Currents"]
-    qtbot.mouseClick(currents.corners, Qt.MouseButton.LeftButton)
-    painted(row)
-    assert shown_titles(row) == ["Currents"]
-    assert currents.width() == 1120
-    assert currents.corners.toolTip() == "Give the row back"
-    qtbot.mouseClick(row.tabs.buttons["Smith chart"], Qt.MouseButton.LeftButton)
-    assert shown_titles(row) == ["Smith chart"]
-    qtbot.mouseClick(row.plots["Smith chart"].corners, Qt.MouseButton.LeftButton)
-    assert shown_titles(row) == ["Match", "Currents", "Smith chart"]
-    assert currents.corners.toolTip() == "Take the whole row"
-
-
-def test_a_narrow_row_shows_fewer_plots_and_words_lead_to_the_others(show, qtbot):
-    row = show(PlotRow, on_a_tee(50, 100), size=(1120, 300))
-    row.resize(810, 300)
-    painted(row)
-    assert shown_titles(row) == ["Match", "Currents"]
-    row.resize(320, 300)
-    painted(row)
-    assert row.width() == 320
-    assert shown_titles(row) == ["Match"]
-    for title in ("Smith chart", "Currents"):
-        qtbot.mouseClick(row.tabs.buttons[title], Qt.MouseButton.LeftButton)
-        assert shown_titles(row) == [title]
-        assert [word for word, button in row.tabs.buttons.items() if button.isChecked()] == [title]
-    row.resize(1120, 300)
-    painted(row)
-    assert shown_titles(row) == ["Match", "Currents", "Smith chart"]
-
-
-def test_a_closed_row_leaves_nothing_that_listens_or_lives_on(qtbot):
-    before = set(QApplication.allWidgets())
-    store = Store(on_a_tee(50, 100))
-    row = PlotRow(store, LIGHT)
-    row.show()
-    painted(row)
-    row.close()
-    row.deleteLater()
-    QApplication.sendPostedEvents(None, QEvent.Type.DeferredDelete)
-    QApplication.processEvents()
-    assert set(QApplication.allWidgets()) <= before
-    store.select(("A",))
-    store.edit("Mark", edits.marked(store.plan, 861e6))
-    store.solve_now()
 
 
 def test_importing_the_plots_brings_no_pyplot():
