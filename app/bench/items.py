@@ -80,7 +80,7 @@ class PartItem(QGraphicsItem):
         if self.selected:
             painter.setPen(pen(look.ink, 1.4))
             painter.setBrush(Qt.BrushStyle.NoBrush)
-            painter.drawRoundedRect(self.body.adjusted(-10, -12, 10, 12), 8, 8)
+            painter.drawRoundedRect(self._frame(), 8, 8)
         painter.save()
         picture.paint(painter, shown)
         painter.restore()
@@ -96,6 +96,12 @@ class PartItem(QGraphicsItem):
             text(painter, sign + detail, QPointF(0, y), colour)
         if self.trouble:
             self._paint_trouble(painter, look)
+
+    def _frame(self) -> QRectF:
+        """What a selected part's frame holds: its shape and its words."""
+        words = 0.0 if self.shown.placed.part.KIND == "radio" else TEXT_GAP + TEXT_LINE
+        words += TEXT_LINE if PICTURES[self.shown.placed.part.KIND].detail(self.shown) else 0.0
+        return self.body.adjusted(-10, -12, 10, 12).united(self.body.adjusted(-10, 0, 10, words + 4))
 
     def _paint_ports(self, painter: QPainter, look: Look) -> None:
         for number, port in enumerate(self.ports, start=1):

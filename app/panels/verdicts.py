@@ -100,6 +100,7 @@ class VerdictStrip(QWidget):
         super().__init__()
         self._store, self._look = store, look
         self._items: list[VerdictItem] = []
+        self._awaited: str | None = None
         self._row = QHBoxLayout(self)
         self._row.setContentsMargins(12, 0, 12, 0)
         self._row.setSpacing(4)
@@ -107,7 +108,7 @@ class VerdictStrip(QWidget):
         self.setAccessibleName("Verdicts")
         self.set_look(look)
         store.answer_changed.connect(self._refresh)
-        store.plan_changed.connect(self.update)
+        store.stale_changed.connect(self._repaint)
         self._refresh()
 
     def set_look(self, look: Look) -> None:
@@ -116,7 +117,7 @@ class VerdictStrip(QWidget):
         dress(self, look)
         for item in self._items:
             item.look = look
-            item.update()
+        self._repaint()
 
     @property
     def items(self) -> tuple[VerdictItem, ...]:
@@ -139,6 +140,8 @@ class VerdictStrip(QWidget):
             item.setVisible(number < len(shown))
             if number < len(shown):
                 item.show_verdict(shown[number])
+        if self._awaited is not None:
+            self._select_deciders(self._awaited)
 
     def _clicked(self, item: VerdictItem) -> None:
         store, shown = self._store, item.shown
@@ -148,10 +151,18 @@ class VerdictStrip(QWidget):
                 store.select((culprit,))
             return
         store.edit("Move the mark", edits.marked(store.plan, shown.frequency_hz), merge="mark")
-        if store.stale:
-            store.solve_now()
-        if store.answer is not None:
-            store.select(deciders(store.answer, shown.about))
+        self._select_deciders(shown.about)
+
+    def _select_deciders(self, limit: str) -> None:
+        """Select the parts that decide a limit at the mark, as soon as the mark is solved."""
+        store = self._store
+        self._awaited = limit if store.stale else None
+        if not store.stale and store.answer is not None:
+            store.select(deciders(store.answer, limit))
+
+    def _repaint(self) -> None:
+        for item in self._items:
+            item.update()
 
 
 class VerdictItem(QAbstractButton):

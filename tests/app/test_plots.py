@@ -68,16 +68,19 @@ def painted(widget) -> None:
     widget.grab()
 
 
+def on_surface(plot: Plot, x: float, y: float) -> QPoint:
+    """Where a place in device pixels, y upwards, is on the surface."""
+    return QPoint(round(x / plot.canvas.scale), round(plot.canvas.height() - y / plot.canvas.scale))
+
+
 def at_value(plot: Plot, frequency_hz: float, value: float) -> QPoint:
     """Where a frequency and a value are on the surface."""
-    x, y = plot.axes.axes.transData.transform((frequency_hz, value))
-    return QPoint(round(x), round(plot.canvas.height() - y))
+    return on_surface(plot, *plot.axes.axes.transData.transform((frequency_hz, value)))
 
 
 def at_reflection(plot: SmithPlot, gamma: complex) -> QPoint:
     """Where a reflection coefficient is on the surface."""
-    x, y = plot.axes.transData.transform((gamma.real, gamma.imag))
-    return QPoint(round(x), round(plot.canvas.height() - y))
+    return on_surface(plot, *plot.axes.transData.transform((gamma.real, gamma.imag)))
 
 
 def click(qtbot, plot: Plot, at: QPoint) -> None:
@@ -262,7 +265,7 @@ def test_a_click_on_a_curve_or_its_name_selects_the_antenna(show, qtbot):
     click(qtbot, plot, at_value(plot, 863e6, drawn(plot, 1)[30]))
     assert plot.store.selected == ("B",)
     x, y = plot.axes.strands[0].name.get_position()
-    click(qtbot, plot, QPoint(round(x) + 3, round(plot.canvas.height() - y)))
+    click(qtbot, plot, on_surface(plot, x + 3, y))
     assert plot.store.selected == ("A",)
     assert plot.store.plan.band.marked_hz == mark_hz
     click(qtbot, plot, at_value(plot, 863e6, 0))
