@@ -297,8 +297,7 @@ class Solved:
 
     def at_port(self, port: str) -> tuple[ComplexArray, ComplexArray]:
         """Voltage, and current into the part, each (F,)."""
-        part, number = self.topology.ports[port]
-        edge, sign = self.topology.planes[part][number]
+        edge, sign, _ = self.topology.ports[port]
         scale = self.flows.scale[..., edge, :]
         return scale * self.flows.v[..., edge, :], scale * self.flows.i[..., edge, :] * sign
 
@@ -313,8 +312,7 @@ class Solved:
         rows = self._rows(_frozen(z))
         unknown = _frozen(np.full(rows[0].shape, complex(np.nan, np.nan)))
         found = {}
-        for port, (part, number) in self.topology.ports.items():
-            far, (edge, _) = self.topology.far[part][number], self.topology.planes[part][number]
+        for port, (edge, _, far) in self.topology.ports.items():
             found[port] = rows[edge] if far > 0 else unknown if far == 0 else _turned(rows[edge])
         return found
 
@@ -349,7 +347,7 @@ class Solved:
         assert isinstance(part, Lines)
         number = getattr(part, "main_line", 0)
         planes = topology.line_planes.get((index, number), topology.planes[index])
-        far = topology.far[index][0]
+        _, sign, far = topology.ports[f"{part_id}:1"]
         if far == 0:
             return None
         cable = getattr(part, "cable", None)
@@ -357,7 +355,7 @@ class Solved:
         first, second = (self._at_plane(edge, sign) for edge, sign in planes)
         f = float(self.frequency_hz[-1])
         # The current runs from near to far; where it runs into port 1, port 1 is the entry.
-        if topology.planes[index][0][1] == far:
+        if sign == far:
             return standing_wave(first, (second[0], -second[1]), line, f, points)
         x, along, forward = standing_wave(second, (first[0], -first[1]), line, f, points)
         return x, along[::-1], forward

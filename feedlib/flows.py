@@ -217,7 +217,7 @@ def look_away(network: Network, ends: ArrayState) -> Looks:
         elif isinstance(op, JoinBatch):
             first = v[..., op.first, :], i[..., op.first, :]
             second = v[..., op.second, :], i[..., op.second, :]
-            v[..., op.up, :], i[..., op.up, :], scale = beside(first, second, op.rescale)
+            scale = beside(first, second, op.rescale, (v[..., op.up, :], i[..., op.up, :]))
             if scale is not None:
                 looks.scales[op.up.start] = scale
         elif isinstance(op, ChainOp):
@@ -257,16 +257,19 @@ def through_lines(state: ArrayState, z0_ohm: Array, q: ComplexArray, out: ArrayS
     np.multiply(forward, 1 / z0_ohm, out=out[1].view(float))
 
 
-def beside(first: ArrayState, second: ArrayState, rescale: bool) -> tuple[ComplexArray, ComplexArray, Array | None]:
-    """The parallel join of two states, (V1 V2, I1 V2 + I2 V1), and the scale that it was brought to."""
-    v = first[0] * second[0]
-    i = first[1] * second[0]
+def beside(first: ArrayState, second: ArrayState, rescale: bool, out: ArrayState) -> Array | None:
+    """The parallel join of two states, (V1 V2, I1 V2 + I2 V1), into `out`; returns the scale it was brought to."""
+    v, i = out
+    np.multiply(first[0], second[0], out=v)
+    np.multiply(first[1], second[0], out=i)
     i += second[1] * first[0]
     if not rescale:
-        return v, i, None
+        return None
     size = np.abs(v) + WAVE_OHM * np.abs(i)
-    scale = 1 / np.where(size > 0, size, 1)
-    return v * scale, i * scale, scale
+    scale: Array = 1 / np.where(size > 0, size, 1)
+    v *= scale
+    i *= scale
+    return scale
 
 
 @dataclass(frozen=True, slots=True)

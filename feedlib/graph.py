@@ -9,7 +9,7 @@ from dataclasses import dataclass
 from typing import NamedTuple
 
 from feedlib.parts.base import Lines
-from feedlib.plan import Plan, Port
+from feedlib.plan import Plan
 
 OPEN = -1
 """Stands for the part index of an open circuit."""
@@ -33,7 +33,7 @@ class Graph:
 
     elements: list[Element]
     ends: list[tuple[int, int]]
-    at_port: dict[Port, tuple[int, int]]
+    at_port: dict[tuple[str, int], tuple[int, int]]
 
     def across(self, edge: int, element: int) -> int:
         """The element on the other side of an edge."""
@@ -58,14 +58,14 @@ def graph_of(plan: Plan) -> Graph:
     """The graph of a plan; ports that are tied to nothing get an open end."""
     elements: list[Element] = []
     ends: list[tuple[int, int]] = []
-    at_port: dict[Port, tuple[int, int]] = {}
+    at_port: dict[tuple[str, int], tuple[int, int]] = {}
     for index, placed in enumerate(plan.parts):
         first, part, part_id = len(elements), placed.part, placed.id
         if not isinstance(part, Lines):
             count = part.ports
             elements.append(Element(index, None, [OPEN] * count))
             for n in range(count):
-                at_port[Port(part_id, n + 1)] = first, n
+                at_port[part_id, n + 1] = first, n
             continue
         count = part.line_count
         for n in range(count):
@@ -73,8 +73,8 @@ def graph_of(plan: Plan) -> Graph:
         for inside in range(first, first + count - 1):
             elements[inside].edges[1] = elements[inside + 1].edges[0] = len(ends)
             ends.append((inside, inside + 1))
-        at_port[Port(part_id, 1)] = first, 0
-        at_port[Port(part_id, 2)] = first + count - 1, 1
+        at_port[part_id, 1] = first, 0
+        at_port[part_id, 2] = first + count - 1, 1
     for join in plan.joins:
         (a, terminal_a), (b, terminal_b) = at_port[join[0]], at_port[join[1]]
         elements[a].edges[terminal_a] = elements[b].edges[terminal_b] = len(ends)

@@ -114,8 +114,10 @@ class _Assembly:
 
     def _turn(self, at: Rows, other: Rows, up: slice, above: ArrayState, beside_it: ArrayState, rescale: bool) -> None:
         """Looking into a join from one of its lower edges: upwards and at the other side by side."""
-        v, i, scale = beside(above, beside_it, rescale)
-        self._set_back(at, (v, i))
+        out = self._back(at)
+        scale = beside(above, beside_it, rescale, out)
+        if not isinstance(at, slice):
+            self._set_back(at, out)
         to_up, to_other = beside_it[0], above[0]
         if scale is not None:
             to_up, to_other = to_up * scale, to_other * scale

@@ -134,7 +134,7 @@ def solve_stack(matrix: ComplexArray, right: ComplexArray) -> ComplexArray:
     if matrix.shape[-2] == 0:
         return np.zeros(right.shape, complex)
     try:
-        found = np.linalg.solve(np.moveaxis(matrix, -1, -3), np.moveaxis(right, -1, -3))
+        found = np.asarray(np.linalg.solve(np.moveaxis(matrix, -1, -3), np.moveaxis(right, -1, -3)), complex)
     except np.linalg.LinAlgError:
         raise Undetermined from None
     return np.moveaxis(found, -3, -1)
@@ -174,4 +174,4 @@ def renormalised(s: ComplexArray, from_ohm: Array, to_ohm: float) -> ComplexArra
     under = np.asarray(eye - g[:, None, None] * s, complex)
     # X (1 - G S) = (S - G): solve the transposed system.
     turned = solve_stack(np.swapaxes(under, -3, -2), np.swapaxes(minus, -3, -2))
-    return np.swapaxes(turned, -3, -2) * d[None, :, None] / d[:, None, None]
+    return np.asarray(np.swapaxes(turned, -3, -2) * (d / d[:, None])[..., None], complex)

@@ -95,9 +95,8 @@ class Topology:
     ops : from the ends to the roots. ends : part index of the end at edge n, for the first edges.
     lines : (part, line) of each row of the line table. roots : (edge, part) where each piece hangs, the radio's first.
     cascaded : edges with a state; edges : all, those inside cores last; one more row, always zero, serves the rest.
-    planes : per part of the plan, per port: its edge, and +1 where the edge's current flows into the part.
-    ports : by name, the part and number (from 0) of each port. far : like planes: +1 where the edge's current runs
-    from near to far, 0 where the radio does not reach. line_planes : the planes of lines that are one of several.
+    planes : per part of the plan, the plane at each port. ports : by name, the plane at each port, and +1 where the
+    edge's current runs from near to far, 0 where the radio does not reach. line_planes : the planes of lines that are one of several.
     """
 
     shape: Shape
@@ -109,8 +108,7 @@ class Topology:
     cascaded: int
     edges: int
     planes: list[list[Plane]]
-    ports: dict[str, tuple[int, int]]
-    far: list[list[int]]
+    ports: dict[str, tuple[int, int, int]]
     line_planes: dict[tuple[int, int], tuple[Plane, Plane]]
 
     @property
@@ -312,11 +310,12 @@ class _Compiler:
     def _described(self, ops: list[Op], lines: list[Element], cascaded: int) -> Topology:
         number, plan = self.number, self.plan
         planes: list[list[Plane]] = [[] for _ in plan.parts]
-        ports: dict[str, tuple[int, int]] = {}
-        for port, (element, terminal) in self.graph.at_port.items():
-            part = self.graph.elements[element].part
-            ports[f"{port.part}:{port.number}"] = part, len(planes[part])
-            planes[part].append(self._plane(element, terminal))
+        ports: dict[str, tuple[int, int, int]] = {}
+        reached, against = {number[edge] for edge in self.reached}, self._against()
+        for (part_id, n), (element, terminal) in self.graph.at_port.items():
+            edge, sign = plane = self._plane(element, terminal)
+            planes[self.graph.elements[element].part].append(plane)
+            ports[f"{part_id}:{n}"] = edge, sign, 0 if edge not in reached else -1 if edge in against else 1
         return Topology(
             shape=shape_of(plan),
             joins=plan.joins,
@@ -328,7 +327,6 @@ class _Compiler:
             edges=len(number),
             planes=planes,
             ports=ports,
-            far=self._far(planes),
             line_planes={
                 (e.part, e.line or 0): (self._plane_of(e, 0), self._plane_of(e, 1)) for e in lines if self._is_inside(e)
             },
@@ -354,25 +352,20 @@ class _Compiler:
         edge = element.edges[terminal]
         return self.number[edge], 1 if self.graph.elements[self.into[edge]] is element else -1
 
-    def _far(self, planes: list[list[Plane]]) -> list[list[int]]:
-        """Tree edges run from near to far as they are; inside loops the count of joins decides."""
-        reached = {self.number[edge] for edge in self.reached}
-        far = [[int(edge in reached) for edge, _ in row] for row in planes]
-        inner = {
-            self.number[edge] for _, op in self.found if isinstance(op, BlockOp) and op.core for edge in op.core.inner
-        }
+    def _against(self) -> set[int]:
+        """Edges whose current runs from far to near: some inside loops, where the count of joins decides."""
+        inner = {edge for _, op in self.found if isinstance(op, BlockOp) and op.core for edge in op.core.inner}
         if not inner or not self.reached:
-            return far
-        index = {p.id: n for n, p in enumerate(self.plan.parts)}
+            return set()
         away = joins_away(self.plan, self.plan.parts[self.roots[0][1]].id)
+        against = set()
         for a, b in self.plan.joins:
-            edge, _ = planes[index[a.part]][a.number - 1]
-            if edge in inner and edge in reached:
-                near = b if away[b.part] < away[a.part] else a
-                _, into_near = planes[index[near.part]][near.number - 1]
-                for port in (a, b):
-                    far[index[port.part]][port.number - 1] = -into_near
-        return far
+            near = b if away.get(b.part, 0) < away.get(a.part, 0) else a
+            element, terminal = self.graph.at_port[near]
+            edge = self.graph.elements[element].edges[terminal]
+            if edge in inner and self._plane(element, terminal)[1] > 0:
+                against.add(self.number[edge])
+        return against
 
     def _take(self, edges: list[int]) -> slice:
         """Give the next numbers to `edges`."""

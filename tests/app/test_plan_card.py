@@ -58,6 +58,7 @@ class Shown:
         qtbot.waitExposed(self.card)
 
     def control(self, name: str) -> Any:
+        QApplication.processEvents()  # what was just added is shown when it is its turn
         found = [w for w in self.card.findChildren(QWidget) if w.accessibleName() == name and w.isVisible()]
         assert found, f"no control is called {name!r}"
         return found[0]
@@ -76,6 +77,7 @@ class Shown:
         self.qtbot.mouseClick(self.control(name), Qt.MouseButton.LeftButton)
 
     def texts(self) -> list[str]:
+        QApplication.processEvents()
         return [label.text() for label in self.card.findChildren(QLabel) if label.isVisible() and label.text()]
 
     def faults(self) -> list[str]:
@@ -195,7 +197,7 @@ def test_channels(shown: Shown) -> None:
     shown.qtbot.keyClicks(names[1], "uplink")
     shown.qtbot.keyClick(names[1], Qt.Key.Key_Return)
     assert shown.store.plan.channels[1].name == "channel 1"
-    assert shown.faults() == ["✗ Two channels are called 'uplink'."]
+    assert shown.faults() == ['✗ Two channels are called "uplink".']
     names[1].selectAll()
     shown.qtbot.keyClicks(names[1], "downlink")
     shown.qtbot.keyClick(names[1], Qt.Key.Key_Return)
@@ -210,6 +212,7 @@ def test_channels(shown: Shown) -> None:
 
 def test_tab_reaches_what_was_added_in_its_place(shown: Shown) -> None:
     shown.press("Add a channel at the mark")
+    QApplication.processEvents()
     order = [w for w in controls(shown.card) if w.isVisible()]
     order[0].setFocus()
     for control in order[1:]:

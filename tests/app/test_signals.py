@@ -1,4 +1,4 @@
-"""Qt's binding: PySide6 6.12.0 on Python 3.11 drops a reference to True at every signal and aborts after about 1,000."""
+"""Qt's binding: on Python 3.11, PySide6 6.12.0 drops a reference to True at every signal and soon aborts."""
 
 from __future__ import annotations
 
