@@ -301,13 +301,13 @@ def drive(network: Network, radio: Radio) -> Flows:
     scale[..., edge, :] = radio.open_circuit_v / whole
     for op in reversed(topology.ops):
         if isinstance(op, LineBatch):
-            scale[..., op.down, :] = scale[..., op.up, :] * network.table.k[..., op.rows, :]
+            put_product(scale, op.down, scale[..., op.up, :], network.table.k[..., op.rows, :])
         elif isinstance(op, JoinBatch):
             above = scale[..., op.up, :]
             if op.rescale:
                 above = above * looks.scales[op.up.start]
-            scale[..., op.first, :] = above * v[..., op.second, :]
-            scale[..., op.second, :] = above * v[..., op.first, :]
+            put_product(scale, op.first, above, v[..., op.second, :])
+            put_product(scale, op.second, above, v[..., op.first, :])
         elif isinstance(op, ChainOp):
             scale[..., op.down, :] = scale[..., op.up, :] * network.chains[op.up].k
         else:
@@ -322,6 +322,14 @@ def drive(network: Network, radio: Radio) -> Flows:
                 i[..., op.core.inner, :] = (arriving - leaving) / np.sqrt(WAVE_OHM)
                 scale[..., op.core.inner, :] = 1
     return Flows(v, i, scale)
+
+
+def put_product(target: ComplexArray, rows: Rows, a: ComplexArray, b: ComplexArray) -> None:
+    """a b into some rows of an array, without a copy where they run on."""
+    if isinstance(rows, slice):
+        np.multiply(a, b, out=target[..., rows, :])
+    else:
+        target[..., rows, :] = a * b
 
 
 def _waves_into(

@@ -182,8 +182,7 @@ class _Assembly:
             for goal, to_rows, to_ways, _ in found:
                 if source != goal:
                     across = from_ways[..., 1, :, :] * self.turns[source, goal][..., None, :]
-                    met = to_ways[..., 0, :, None, :] * across[..., None, :, :]
-                    self._put(to_rows, from_rows, met)
+                    self._put(to_rows, from_rows, to_ways[..., 0, :, None, :], across[..., None, :, :])
         rows = [row for _, some, *_ in found for row in some]
         gathered = np.empty((*self.s.shape[:-3], 2, len(rows), self.s.shape[-1]), complex)
         at = 0
@@ -194,13 +193,15 @@ class _Assembly:
             at = span.stop
         self.below[up] = rows, gathered, None
 
-    def _put(self, to_rows: list[int], from_rows: list[int], met: ComplexArray) -> None:
-        """Write a block of S; terminals in the plan's order make it a plain one."""
+    def _put(self, to_rows: list[int], from_rows: list[int], down: ComplexArray, up: ComplexArray) -> None:
+        """Fill a block of S; terminals in the plan's order make it a plain one."""
         to, source = run(to_rows), run(from_rows)
-        if isinstance(to, slice) or isinstance(source, slice):
-            self.s[..., to, source, :] = met
+        if isinstance(to, slice) and isinstance(source, slice):
+            np.multiply(down, up, out=self.s[..., to, source, :])
+        elif isinstance(to, slice) or isinstance(source, slice):
+            self.s[..., to, source, :] = down * up
         else:
-            self.s[..., to[:, None], source, :] = met
+            self.s[..., to[:, None], source, :] = down * up
 
     def _back(self, edges: Rows | int) -> ArrayState:
         return self.back_v[..., edges, :], self.back_i[..., edges, :]

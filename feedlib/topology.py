@@ -96,7 +96,8 @@ class Topology:
     lines : (part, line) of each row of the line table. roots : (edge, part) where each piece hangs, the radio's first.
     cascaded : edges with a state; edges : all, those inside cores last; one more row, always zero, serves the rest.
     planes : per part of the plan, the plane at each port. ports : by name, the plane at each port, and +1 where the
-    edge's current runs from near to far, 0 where the radio does not reach. line_planes : the planes of lines that are one of several.
+    edge's current runs from near to far, 0 where the radio does not reach. line_planes : the planes of each line
+    that is one of several of its part.
     """
 
     shape: Shape
