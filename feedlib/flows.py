@@ -340,8 +340,8 @@ def _waves_into(
     return np.insert(0.5 * (v / root - root * i) * below, op.port, above, axis=-2)
 
 
-SLICE_BYTES = 2e6
-"""Frequencies are taken in slices, so that one array of a large harness stays in the processor's cache."""
+SLICE_BYTES = 1e8
+"""Frequencies are taken in slices where one array would be larger than this, which bounds what is held at a time."""
 
 
 def drive_in_slices(

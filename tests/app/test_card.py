@@ -96,7 +96,8 @@ class Shown:
         self.card.setFixedWidth(SHEET_WIDTH)
         qtbot.addWidget(self.card)
         self.card.show()
-        qtbot.waitExposed(self.card)
+        with qtbot.waitActive(self.card):
+            self.card.activateWindow()
 
     def select(self, *part_ids: str) -> None:
         self.store.select(part_ids)

@@ -55,7 +55,8 @@ class Shown:
         self.card.setFixedWidth(SHEET_WIDTH)
         qtbot.addWidget(self.card)
         self.card.show()
-        qtbot.waitExposed(self.card)
+        with qtbot.waitActive(self.card):
+            self.card.activateWindow()
 
     def control(self, name: str) -> Any:
         QApplication.processEvents()  # what was just added is shown when it is its turn
