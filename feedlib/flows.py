@@ -340,7 +340,7 @@ def _waves_into(
     return np.insert(0.5 * (v / root - root * i) * below, op.port, above, axis=-2)
 
 
-SLICE_BYTES = 1e8
+SLICE_BYTES = 8e6
 """Frequencies are taken in slices where one array would be larger than this, which bounds what is held at a time."""
 
 

@@ -10,14 +10,22 @@ import pytest
 from hypothesis import example, given
 from hypothesis import strategies as st
 
-from app.editing.entry import LengthUnit, read_length_m, read_quantity
+from app.editing.entry import LengthUnit, read_complex_ohm, read_length_m, read_quantity
 from app.editing.wording import (
+    READ_BACK_REL,
+    editable_impedance,
     editable_length,
+    editable_quantity,
+    field_unit,
+    format_angle,
+    format_current,
     format_db,
     format_frequency,
     format_impedance,
     format_length,
     format_power,
+    format_share,
+    format_voltage,
     wheel_step_m,
 )
 
@@ -235,3 +243,62 @@ def test_wheel_step_is_a_round_figure_near_a_fifth_of_a_degree(frequency_hz: flo
     step_deg = 360 * step_m * frequency_hz / (velocity_factor * 299_792_458)
     assert f"{step_m:e}"[:8] in ("1.000000", "2.000000", "5.000000")
     assert 0.2 / math.sqrt(2.5) * 0.999 < step_deg < 0.2 * math.sqrt(2.5) * 1.001
+
+
+@pytest.mark.parametrize(
+    ("value", "unit", "text"),
+    [
+        (868e6, "Hz", "868 MHz"),
+        (868.035e6, "Hz", "868.035 MHz"),
+        (2.45e9, "Hz", "2450 MHz"),
+        (8.2e-9, "H", "8.2 nH"),
+        (3.3e-12, "F", "3.3 pF"),
+        (50.0, "ohm", "50 Ω"),
+        (0.1, "W", "0.1 W"),
+        (20.0, "dB", "20 dB"),
+        (-90.0, "deg", "-90°"),
+        (0.695, "", "0.695"),
+        (-0.0, "dB", "0 dB"),
+    ],
+)
+def test_editable_quantity(value: float, unit: str, text: str) -> None:
+    assert editable_quantity(value, unit=unit) == text
+
+
+@given(st.floats(1e-15, 1e15), st.sampled_from(["Hz", "H", "F", "ohm", "W", "dB", "deg", ""]))
+def test_editable_quantity_reads_back(value: float, unit: str) -> None:
+    text = editable_quantity(value, unit=unit)
+    assert read_quantity(text, unit=unit) == pytest.approx(value, rel=READ_BACK_REL)
+    bare = text.removesuffix(field_unit(unit)).strip()
+    assert read_quantity(bare, unit=unit, bare_unit=field_unit(unit)) == pytest.approx(value, rel=READ_BACK_REL)
+
+
+@pytest.mark.parametrize(
+    ("impedance_ohm", "text"),
+    [(50 + 0j, "50 Ω"), (36 - 12.5j, "36 - j12.5 Ω"), (0.1 + 1j, "0.1 + j1 Ω"), (0j, "0 Ω"), (-3j, "0 - j3 Ω")],
+)
+def test_editable_impedance(impedance_ohm: complex, text: str) -> None:
+    assert editable_impedance(impedance_ohm) == text
+    assert read_complex_ohm(text) == impedance_ohm
+
+
+@pytest.mark.parametrize(
+    ("value", "voltage", "current"),
+    [
+        (9.776, "9.78 V", "9.78 A"),
+        (0.14142, "141 mV", "141 mA"),
+        (0.9996, "1 V", "1 A"),
+        (1234.0, "1.23 kV", "1.23 kA"),
+        (0.0, "0 V", "0 A"),
+        (math.inf, "∞", "∞"),
+        (math.nan, "—", "—"),
+    ],
+)
+def test_voltage_and_current(value: float, voltage: str, current: str) -> None:
+    assert format_voltage(value) == voltage
+    assert format_current(value) == current
+
+
+def test_angle_and_share() -> None:
+    assert [format_angle(x) for x in (8.16, -12.34, -0.04, math.nan)] == ["8.2°", "−12.3°", "0.0°", "—"]
+    assert [format_share(x) for x in (0.5021, 1.0, -0.0004, math.inf)] == ["50.2 %", "100.0 %", "0.0 %", "∞"]

@@ -108,7 +108,8 @@ def test_balances_and_harness_loss_are_by_their_definitions(plan):
     np.testing.assert_allclose(off, 0, atol=1e-9)
     entered, delivered = 1 - answer.reflected_share, answer.antenna_share.sum(axis=1)
     sure = entered > 1e-6
-    np.testing.assert_allclose((entered * 10 ** (-answer.harness_loss_db / 10))[sure], delivered[sure], atol=1e-9)
+    got = entered[sure] * 10 ** (-answer.harness_loss_db[sure] / 10)
+    np.testing.assert_allclose(got, delivered[sure], rtol=1e-9, atol=1e-12)
 
 
 @many
