@@ -43,7 +43,6 @@ class CableEditor(FieldEditor):
         for name in names:
             self.box.addItem(name, name)
         for impedance, types in by_impedance():
-            self.box.insertSeparator(self.box.count())
             self._head(f"{impedance}, from the catalogue")
             for cable in types:
                 if cable.type in names:

@@ -13,7 +13,7 @@ from PySide6.QtGui import (
     QResizeEvent,
     QWheelEvent,
 )
-from PySide6.QtWidgets import QComboBox, QLineEdit, QPlainTextEdit
+from PySide6.QtWidgets import QComboBox, QLineEdit, QPlainTextEdit, QStyledItemDelegate
 
 from app.panels.style import plain_label, set_text
 
@@ -100,6 +100,9 @@ class ChoiceBox(QComboBox):
         self.setAccessibleName(name)
         self.setSizeAdjustPolicy(QComboBox.SizeAdjustPolicy.AdjustToMinimumContentsLengthWithIcon)
         self.setMinimumContentsLength(4)
+        self.setMaxVisibleItems(20)
+        # The usual delegate of a combo box leaves rows as narrow as a native menu's.
+        self.setItemDelegate(QStyledItemDelegate(self))
 
     def wheelEvent(self, event: QWheelEvent) -> None:
         event.ignore()

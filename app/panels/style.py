@@ -107,6 +107,9 @@ QComboBox QAbstractItemView {{
     background: {look.card}; color: {look.ink}; border: 1px solid {look.hairline};
     selection-background-color: {look.band_wash}; selection-color: {look.ink};
 }}
+QComboBox QAbstractItemView::item {{ padding: 3px 6px; }}
+QComboBox QAbstractItemView::item:selected {{ background: {look.band_wash}; color: {look.ink}; }}
+QComboBox QAbstractItemView::item:disabled {{ color: {look.soft}; }}
 QMenu {{ background: {look.card}; border: 1px solid {look.hairline}; padding: 4px; }}
 QMenu::item {{ padding: 4px 20px 4px 12px; }}
 QMenu::item:selected {{ background: {look.band_wash}; }}

@@ -19,7 +19,6 @@ from feedlib.assets_place import ASSETS
 from feedlib.catalogue import figures, load_catalogue
 from feedlib.parts import Antenna, Coax, Radio
 from feedlib.parts.antenna import AntennaImpedance
-from feedlib.plan import Cable
 from feedlib.plan_file import format_plan
 
 FOLDER = ASSETS / "examples"
@@ -159,7 +158,8 @@ def test_cables_are_the_catalogues(name: str) -> None:
     catalogue = {cable.type: cable for cable in load_catalogue()}
     highest_hz = (plan.sweep or plan.band).stop_hz
     for cable_type, cable in plan.cables.items():
-        assert cable == Cable(**figures(catalogue[cable_type]))
+        published = figures(catalogue[cable_type])
+        assert {field: getattr(cable, field) for field in published} == published
         assert (catalogue[cable_type].max_frequency_hz or 0) >= highest_hz
 
 
