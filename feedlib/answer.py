@@ -14,12 +14,13 @@ from typing import Any, TypeVar
 
 import numpy as np
 
+from feedlib.arcs import smallest_arc_deg
 from feedlib.conventions import Array, ComplexArray, Index
-from feedlib.flows import Flows, LineValues, Network, network_of, standing_wave
+from feedlib.flows import Flows, LineValues, Network, network_of
 from feedlib.harness import MAX_BYTES, bytes_of, harness_s
 from feedlib.parts import Antenna, Radio
-from feedlib.parts.base import Lines
 from feedlib.plan import Plan
+from feedlib.swells import Swell, swells_of
 from feedlib.topology import Topology
 
 
@@ -167,13 +168,13 @@ class Answer(Figures):
         """Whether every limit holds."""
         return all(v.holds for v in self.verdicts)
 
-    def swell(self, part_id: str, points: int = 33) -> tuple[Array, ComplexArray, complex] | None:
-        """The standing wave on a coax at the mark, from port 1 to port 2 of the cable itself.
+    def swell(self, part_id: str, points: int = 33) -> Swell | None:
+        """The standing wave on a coax at the mark: (x from 0 to 1, V(x), forward wave's voltage at its entry).
 
-        (x from 0 to 1, V(x), forward wave's voltage at its entry); None where the radio does not reach. The entry
-        is the side nearer the radio.
+        From port 1 to port 2 of the cable itself; the entry is the side nearer the radio. None where the radio does
+        not reach.
         """
-        return self._solved.swell(part_id, points)
+        return self._solved.swells(points).get(part_id)
 
 
 JUDGED: dict[str, bool] = {
@@ -201,6 +202,7 @@ class Solved:
     ) -> None:
         self.plan, self.topology, self.values = plan, topology, values
         self.frequency_hz, self.radio, self.flows, self._network = frequency_hz, radio, flows, network
+        self._swells: dict[int, dict[str, Swell]] = {}
         self.antennas = [(n, p.id, p.part) for n, p in enumerate(plan.parts) if isinstance(p.part, Antenna)]
         self.antenna_ids = tuple(part_id for _, part_id, _ in self.antennas)
         planes = [topology.planes[n][0] for n, *_ in self.antennas]
@@ -340,30 +342,13 @@ class Solved:
         with np.errstate(divide="ignore"):
             return _frozen(-20 * np.log10(loudest) + 0.0)
 
-    def swell(self, part_id: str, points: int) -> tuple[Array, ComplexArray, complex] | None:
-        topology, plan = self.topology, self.plan
-        index = next(n for n, p in enumerate(plan.parts) if p.id == part_id)
-        part = plan.parts[index].part
-        assert isinstance(part, Lines)
-        number = getattr(part, "main_line", 0)
-        planes = topology.line_planes.get((index, number), topology.planes[index])
-        _, sign, far = topology.ports[f"{part_id}:1"]
-        if far == 0:
-            return None
-        cable = getattr(part, "cable", None)
-        line = part.lines(None if cable is None else plan.cables[cable])[number]
-        first, second = (self._at_plane(edge, sign) for edge, sign in planes)
-        f = float(self.frequency_hz[-1])
-        # The current runs from near to far; where it runs into port 1, port 1 is the entry.
-        if sign == far:
-            return standing_wave(first, (second[0], -second[1]), line, f, points)
-        x, along, forward = standing_wave(second, (first[0], -first[1]), line, f, points)
-        return x, along[::-1], forward
-
-    def _at_plane(self, edge: int, sign: int) -> tuple[ComplexArray, ComplexArray]:
-        """Voltage, and current into the line, at the mark."""
-        scale = self.flows.scale[..., edge, -1]
-        return scale * self.flows.v[..., edge, -1], sign * scale * self.flows.i[..., edge, -1]
+    def swells(self, points: int) -> dict[str, Swell]:
+        """The swells at the mark, by coax."""
+        found = self._swells.get(points)
+        if found is None:
+            at, f = self.frequency_hz.size - 1, float(self.frequency_hz[-1])
+            found = self._swells[points] = swells_of(self.plan, self.topology, self.flows, at, f, points)
+        return found
 
 
 def _turned(z_ohm: ComplexArray) -> ComplexArray:
@@ -377,38 +362,6 @@ def _real_product(a: ComplexArray, b: ComplexArray) -> Array:
     """Re(a b*), by real arithmetic."""
     product: Array = a.view(float) * b.view(float)
     found: Array = product[..., 0::2] + product[..., 1::2]
-    return found
-
-
-def smallest_arc_deg(current: ComplexArray, wanted_deg: Array) -> Array:
-    """(F,) smallest arc that holds every arg(current) - wanted (N, F); currents of 0 are left out.
-
-    Angles are taken against the first antenna, so that the common case, all within half a turn, needs no sorting.
-    """
-    if current.shape[-2] < 2:
-        return np.zeros((*current.shape[:-2], current.shape[-1]))
-    against = current[..., :1, :].conj()
-    angle = np.degrees(np.angle(current * against)) - (wanted_deg - wanted_deg[:1])
-    if wanted_deg.any():
-        angle = np.mod(angle + 180, 360) - 180
-    arc: Array = angle.max(axis=-2) - angle.min(axis=-2)
-    wide = arc > 180
-    if not current.all():
-        wide |= (current == 0).any(axis=-2)
-    if wide.any():
-        arc[wide] = _arc_by_gaps_deg(
-            np.where(current == 0, np.nan, np.degrees(np.angle(current)) - wanted_deg)[..., wide]
-        )
-    return arc
-
-
-def _arc_by_gaps_deg(angle_deg: Array) -> Array:
-    """(F,) a turn less the largest gap between neighbouring angles (N, F); nan are left out; 0 for none."""
-    ordered = np.sort(np.mod(angle_deg, 360), axis=-2)  # nan last
-    # A left-out angle repeats the smallest one, and sorted again it opens no gap.
-    ordered = np.sort(np.where(np.isnan(ordered), ordered[..., :1, :], ordered), axis=-2)
-    gaps = np.diff(ordered, axis=-2, append=ordered[..., :1, :] + 360.0)
-    found: Array = np.nan_to_num(360.0 - gaps.max(axis=-2))
     return found
 
 

@@ -357,24 +357,3 @@ def drive_in_slices(
         for n in range(0, frequency_hz.size, step)
     ]
     return Flows(*(np.concatenate([getattr(f, name) for f in found], axis=-1) for name in ("v", "i", "scale"))), None
-
-
-def standing_wave(
-    entry: tuple[ComplexArray, ComplexArray],
-    exit_: tuple[ComplexArray, ComplexArray],
-    line: Line,
-    frequency_hz: float,
-    points: int,
-) -> tuple[Array, ComplexArray, complex]:
-    """Voltage along a line from its entry, at one frequency: (x from 0 to 1, V(x), forward wave at the entry).
-
-    entry : V and I into the line at its entry; exit_ : V and I out of it at its far end. Written with the forward
-    wave from the entry and the backward wave from the far end, so that both factors decay.
-    """
-    mhz = frequency_hz / 1e6
-    loss_np = line.flat_np + line.skin_np * np.sqrt(mhz) + line.dielectric_np * mhz
-    gamma_l = complex(loss_np, 2 * np.pi * frequency_hz * line.delay_s)
-    forward = 0.5 * (entry[0] + line.z0_ohm * entry[1])
-    backward = 0.5 * (exit_[0] - line.z0_ohm * exit_[1])
-    x = np.linspace(0, 1, points)
-    return x, forward * np.exp(-gamma_l * x) + backward * np.exp(-gamma_l * (1 - x)), complex(forward)

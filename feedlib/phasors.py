@@ -9,6 +9,7 @@ from __future__ import annotations
 import numpy as np
 
 from feedlib.answer import Figures
+from feedlib.arcs import arc_middle_deg
 from feedlib.conventions import Array
 
 
@@ -29,21 +30,3 @@ def amplitude_from_middle_db(figures: Figures) -> Array:
     largest, smallest = (pick.reduce(level_db, axis=-1, initial=np.nan) for pick in (np.fmax, np.fmin))
     from_middle_db: Array = level_db - (largest + smallest)[:, None] / 2
     return from_middle_db
-
-
-def arc_middle_deg(angle_deg: Array) -> Array:
-    """(F,) the middle of the smallest arc that holds all angles (N, F), 0 to 360.
-
-    nan are left out; nan where no angle is left. Of several smallest arcs the one that begins lowest in 0 to 360.
-    """
-    if not angle_deg.size:
-        return np.full(angle_deg.shape[-1], np.nan)
-    ordered = np.sort(np.mod(angle_deg, 360.0), axis=0)  # nan last
-    # A left-out angle repeats the smallest one, and sorted again it opens no gap.
-    ordered = np.sort(np.where(np.isnan(ordered), ordered[:1], ordered), axis=0)
-    gap = ordered - np.roll(ordered, 1, axis=0)
-    gap[0] += 360.0
-    after = np.argmax(np.nan_to_num(gap), axis=0)[None]
-    start, largest = (np.take_along_axis(a, after, axis=0)[0] for a in (ordered, gap))
-    middle_deg: Array = np.mod(start + (360.0 - largest) / 2, 360.0)
-    return middle_deg

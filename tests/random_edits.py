@@ -82,7 +82,9 @@ def _limit(draw: st.DrawFn, plan: Plan) -> Plan:
 
 def _cable(draw: st.DrawFn, plan: Plan) -> Plan:
     name = draw(st.sampled_from(["of no catalogue", *plan.cables]))
-    cable = Cable(z0_ohm=draw(number(20, 150)), velocity_factor=draw(number(0.5, 1)), skin_db_per_100m=draw(number(0, 9)))
+    cable = Cable(
+        z0_ohm=draw(number(20, 150)), velocity_factor=draw(number(0.5, 1)), skin_db_per_100m=draw(number(0, 9))
+    )
     return edits.with_cable(plan, name, cable)
 
 

@@ -89,7 +89,7 @@ def free_id(plan: Plan, part: Part) -> str:
 
 
 def removed(plan: Plan, part_ids: Collection[str]) -> Plan:
-    """The plan without some parts; where a two-port goes, the chain heals."""
+    """The plan without some parts; where a two-port goes, the chain heals, unless that would close a bare loop."""
     gone = set(part_ids)
     joins = list(plan.joins)
     for part_id in part_ids:
@@ -97,7 +97,9 @@ def removed(plan: Plan, part_ids: Collection[str]) -> Plan:
         at = [j for j in joins if part_id in (j[0].part, j[1].part)]
         joins = [j for j in joins if j not in at]
         others = [b if a.part == part_id else a for a, b in at]
-        if placed.part.ports == 2 and len(others) == 2 and part_id not in (others[0].part, others[1].part):
+        ends = {port.part for port in others}
+        beside = any({a.part, b.part} == ends for a, b in joins)
+        if placed.part.ports == 2 and len(ends) == 2 and not beside:
             joins.append((others[0], others[1]))
     # A healed chain whose neighbour goes as well ends there.
     parts = tuple(p for p in plan.parts if p.id not in gone)

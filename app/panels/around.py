@@ -8,6 +8,17 @@ from feedlib.plan import Cable, Plan, Port
 from feedlib.schema import Record
 
 
+def mates_of(plan: Plan, part_id: str) -> dict[int, Port]:
+    """What each joined port of a part is joined to, by its number and in that order; one pass over the joins."""
+    found = {}
+    for a, b in plan.joins:
+        if a.part == part_id:
+            found[a.number] = b
+        if b.part == part_id:
+            found[b.number] = a
+    return dict(sorted(found.items()))
+
+
 @dataclass(frozen=True, slots=True)
 class Around:
     """The plan, the record that holds the field, and the part that this record belongs to (or None)."""

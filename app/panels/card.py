@@ -10,7 +10,7 @@ from PySide6.QtWidgets import QPushButton, QVBoxLayout, QWidget
 from app.editing import edits
 from app.editing.wording import format_frequency
 from app.look import Look
-from app.panels.around import Around
+from app.panels.around import Around, mates_of
 from app.panels.blocks import FigureBlock, ProblemBlock, rule
 from app.panels.controls import LineField
 from app.panels.editors import NoteEditor, TextEditor
@@ -227,15 +227,15 @@ class _SeveralParts(QWidget):
 
 def kind_and_place(plan: Plan, placed: Placed) -> str:
     """The kind of a part in trade words, and what it is joined to."""
-    mates = [plan.mate(port) for port in placed.ports()]
-    names = [plan.placed(mate.part).name for mate in mates if mate is not None]
+    mates = mates_of(plan, placed.id)
     kind = placed.part.LABEL
-    if not names:
+    if not mates:
         return f"{kind}, joined to nothing"
-    free = len(mates) - len(names)
+    free = placed.part.ports - len(mates)
     after = f", {free} port{'s' if free > 1 else ''} open" if free else ""
-    if len(names) > MOST_NAMES:
-        return f"{kind} between {len(names)} parts{after}"
+    if len(mates) > MOST_NAMES:
+        return f"{kind} between {len(mates)} parts{after}"
+    names = [plan.placed(mate.part).name for mate in mates.values()]
     if len(names) == 1:
         return f"{kind} at {names[0]}{after}"
     return f"{kind} between {', '.join(names[:-1])} and {names[-1]}{after}"

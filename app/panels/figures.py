@@ -16,6 +16,7 @@ from app.editing.wording import (
     format_share,
     format_voltage,
 )
+from app.panels.around import mates_of
 from feedlib import Answer, Plan
 from feedlib.conventions import guided_wavelength_m
 from feedlib.graph import joins_away
@@ -50,10 +51,9 @@ def near_port(plan: Plan, part_id: str) -> int | None:
     """The number of the port through which the radio reaches a part, or None."""
     radio = next((p.id for p in plan.parts if isinstance(p.part, Radio)), None)
     away = joins_away(plan, radio) if radio is not None else {}
-    for port in plan.placed(part_id).ports():
-        mate = plan.mate(port)
-        if mate is not None and mate.part in away and away[mate.part] < away[part_id]:
-            return port.number
+    for number, mate in mates_of(plan, part_id).items():
+        if mate.part in away and away[mate.part] < away[part_id]:
+            return number
     return None
 
 

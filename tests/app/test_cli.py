@@ -7,7 +7,6 @@ import json
 import os
 import subprocess
 import sys
-import tomllib
 from collections.abc import Mapping
 from pathlib import Path
 from typing import Any
@@ -15,7 +14,6 @@ from typing import Any
 import numpy as np
 import pytest
 import skrf
-from PySide6.QtGui import QImage
 
 from app.cli import main
 from feedlib import Answer, read_plan, solve, write_plan
@@ -364,19 +362,3 @@ def test_an_output_that_cannot_be_written(
     (tmp_path / "a folder").mkdir()
     assert str(tmp_path / target) in refused(["solve", str(path), option, str(tmp_path / target)], capsys)
     assert sorted(p.name for p in tmp_path.rglob("*")) == ["a folder", "harness.feedplan"]
-
-
-# picture
-
-
-def picture(words: list[str], out: Path) -> QImage:
-    """The picture that a command draws."""
-    assert main(["picture", *words, "--out", str(out)]) == 0
-    image = QImage(str(out), "PNG")
-    assert not image.isNull()
-    return image
-
-
-def lightness(image: QImage) -> int:
-    """The mean of all pixels, 0 to 255."""
-    return image.scaled(1, 1, mode=image_mode()).pixelColor(0, 0).lightness()

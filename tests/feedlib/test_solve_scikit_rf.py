@@ -30,7 +30,6 @@ class Twin:
         self.reference_ohm = reference_ohm
         self.networks: dict[str, Network] = {}
         self.loads: dict[str, Network] = {}
-        self.joins: list[list[str]] = []
 
     def line(self, gamma_l: np.ndarray, z0_ohm: float, name: str) -> Network:
         """A line as scikit-rf makes it, at 50 ohm."""
@@ -82,14 +81,13 @@ class Twin:
 
     def join(self, *ports: str) -> None:
         self.sketch.join(*ports)
-        self.joins = self.sketch.joins
 
     def circuit(self, *taken_off: str) -> Network:
         """scikit-rf's network between the terminals that are taken off; loads stand at the others."""
         networks = {**self.networks, **{k: v for k, v in self.loads.items() if k not in taken_off}}
         pairs = [
             [(networks[name], int(number) - 1) for name, number in (port.split(":") for port in join)]
-            for join in self.joins
+            for join in self.sketch.joins
         ]
         wanted = [name for name in self.loads if name in taken_off]
         found = Circuit(pairs)
