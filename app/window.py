@@ -123,7 +123,7 @@ class Window(QMainWindow):
         """Finish what views put off until things are quiet (for a picture)."""
         self.bench.fit()
         if self.plots is not None:
-            self.plots.settle()  # type: ignore[attr-defined]
+            self.plots.settle()
 
     def _build_examples(self) -> None:
         menu = self.menus["File"].addMenu("&Examples")

@@ -49,7 +49,7 @@ class PartItem(QGraphicsItem):
         reach = self.body
         for port in self.ports:
             reach = reach.united(QRectF(port.x() - GRAB, port.y() - GRAB, 2 * GRAB, 2 * GRAB))
-        half = max(100.0, reach.width() / 2 + 8)
+        half = max(120.0, reach.width() / 2 + 8)
         self._bounds = QRectF(-half, reach.top() - 34, 2 * half, reach.height() + 34 + TEXT_GAP + 2 * TEXT_LINE + 6)
 
     def port_at(self, number: int) -> QPointF:

@@ -119,7 +119,7 @@ def text(
     *,
     size: Literal["small", "text", "head"] = "small",
     bold: bool = False,
-    widest: float = 190.0,
+    widest: float = 230.0,
 ) -> None:
     """Words centred below a point, shortened to fit."""
     face = font(size, bold=bold)

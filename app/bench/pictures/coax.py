@@ -9,6 +9,7 @@ from PySide6.QtCore import QPointF, QRectF, Qt
 from PySide6.QtGui import QColor, QPainter, QPen, QPolygonF
 
 from app.bench.pictures.base import Picture, Shown, one_line, pen, stubs
+from app.editing.entry import LengthUnit
 from app.editing.wording import format_length
 from feedlib.conventions import Array, guided_wavelength_m
 from feedlib.parts import Coax
@@ -101,7 +102,9 @@ class CoaxPicture(Picture):
         part = shown.placed.part
         assert isinstance(part, Coax)
         cable = shown.plan.cables.get(part.cable)
-        length = format_length(part.length_m, "mm", frequency_hz=None, velocity_factor=None)
+        unit: LengthUnit = "mm" if part.length_m < 2 else "m"
+        length = format_length(part.length_m, unit, frequency_hz=None, velocity_factor=None)
         if cable is None:
             return f"no cable {one_line(part.cable)} · {length}"
-        return f"{one_line(part.cable)} · {length} · {electrical_deg(part, cable, shown.plan.band.marked_hz):.1f}°"
+        degrees = electrical_deg(part, cable, shown.plan.band.marked_hz)
+        return f"{one_line(part.cable)} · {length} · {degrees:.{1 if degrees < 1000 else 0}f}°"

@@ -15,17 +15,17 @@ class RadioPicture(Picture):
     """A card with its name and what it is; its one port at the right."""
 
     def body(self, placed: Placed, plan: Plan) -> QRectF:
-        return QRectF(-46, -27, 92, 54)
+        return QRectF(-54, -27, 108, 54)
 
     def ports(self, placed: Placed, plan: Plan) -> list[QPointF]:
-        return [QPointF(52, 0)]
+        return [QPointF(60, 0)]
 
     def paint(self, painter: QPainter, shown: Shown) -> None:
         part = shown.placed.part
         assert isinstance(part, Radio)
         stubs(painter, self, shown)
         box(painter, self.body(shown.placed, shown.plan), shown.look)
-        text(painter, shown.name, QPointF(0, -21), shown.look.ink, size="text", bold=True, widest=86)
+        text(painter, shown.name, QPointF(0, -21), shown.look.ink, size="text", bold=True, widest=100)
         z = part.impedance_ohm
         ohm = f"{z.real:g} Ω" if z.imag == 0 else format_impedance(z)
-        text(painter, f"{ohm} · {format_power(part.power_w)}", QPointF(0, 2), shown.look.soft, widest=88)
+        text(painter, f"{ohm} · {format_power(part.power_w)}", QPointF(0, 2), shown.look.soft, widest=104)
