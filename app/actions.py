@@ -23,7 +23,7 @@ class ActionRecord:
     menu: str
     text: str
     keys: Key
-    run: Callable[[Window], None]
+    run: Callable[[Window], object]
     tip: str = ""
 
 

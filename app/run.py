@@ -6,14 +6,15 @@ import os
 import sys
 from pathlib import Path
 
-from PySide6.QtCore import QTimer
-from PySide6.QtGui import QFont, QFontDatabase, QIcon
+from PySide6.QtCore import QBuffer, QTimer
+from PySide6.QtGui import QFont, QFontDatabase, QIcon, QImageWriter
 from PySide6.QtWidgets import QApplication
 
 from app.look import DARK, LIGHT
 from app.reporting import catch_bugs
 from feedlib import Plan
 from feedlib.assets_place import ASSETS
+from feedlib.plan_file import write_atomically
 
 
 def make_application() -> QApplication:
@@ -66,7 +67,7 @@ def draw_picture(plan: Plan, path: Path, out: Path, size: tuple[int, int], *, da
         application.processEvents()
     window.settle()
     application.processEvents()
-    image = window.grab().toImage()
-    if not image.save(str(out), "PNG"):
-        raise OSError(0, "the picture cannot be written", str(out))
+    buffer = QBuffer()
+    QImageWriter(buffer, b"PNG").write(window.grab().toImage())
     window.close_without_asking()
+    write_atomically(out, buffer.data().data())

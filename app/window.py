@@ -6,7 +6,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING, Literal
 
 from PySide6.QtCore import QByteArray, QPoint, QPointF, QSettings, Qt
-from PySide6.QtGui import QCloseEvent, QGuiApplication
+from PySide6.QtGui import QCloseEvent, QColor, QGuiApplication, QPalette
 from PySide6.QtWidgets import QFileDialog, QHBoxLayout, QLabel, QMainWindow, QMenu, QSplitter, QVBoxLayout, QWidget
 
 from app.actions import build_menus
@@ -41,9 +41,9 @@ class Window(QMainWindow):
         super().__init__()
         self._settings = QSettings() if remember else None
         self.look = look or self._chosen_look()
-        self.store = Store(plan or new_plan(), path if plan is not None and not _is_example(path) else None)
-        self.files = Files(self.store, self)
-        self.bench = BenchView(self.store, self.look)
+        self.store: Store = Store(plan or new_plan(), path if plan is not None and not _is_example(path) else None)
+        self.files: Files = Files(self.store, self)
+        self.bench: BenchView = BenchView(self.store, self.look)
         self.placing = Placing(self.store, entries(), self)
         self.drawer = PartsDrawer(self.look)
         self.rail = FrequencyRail(self.store, self.look)
@@ -84,7 +84,7 @@ class Window(QMainWindow):
         middle.addLayout(column, 1)
         self._split.addWidget(above)
         self._split.setChildrenCollapsible(False)
-        self._split.setHandleWidth(5)
+        self._split.setHandleWidth(2)
         body = QHBoxLayout()
         body.setContentsMargins(0, 0, 0, 0)
         body.setSpacing(0)
@@ -110,6 +110,7 @@ class Window(QMainWindow):
 
         self.plots = PlotRow(self.store, self.look)
         self._split.addWidget(self.plots)
+        self.set_look(self.look)  # dresses the splitter's new handle
         height = max(240, round(self._split.height() * 0.37))
         self._split.setSizes([self._split.height() - height, height])
         self._split.setStretchFactor(0, 1)
@@ -171,10 +172,15 @@ class Window(QMainWindow):
         self.look = look
         self.setPalette(palette_of(look))
         self.menuBar().setPalette(palette_of(look))
-        self.centralWidget().setAutoFillBackground(True)
+        if (whole := self.centralWidget()) is not None:
+            whole.setAutoFillBackground(True)
         for label, colour in ((self.title, look.ink), (self.band, look.soft), (self.hint, look.soft)):
             label.setStyleSheet(f"color: {colour}; background: transparent")
-        self._split.setStyleSheet(f"QSplitter::handle {{ background: {look.hairline}; margin: 2px 0 }}")
+        handle, line = self._split.handle(1), palette_of(look)
+        line.setColor(QPalette.ColorRole.Window, QColor(look.hairline))
+        if handle is not None:
+            handle.setPalette(line)
+            handle.setAutoFillBackground(True)
         for view in (self.bench, self.drawer, self.rail, self.strip, self.sheet, self.plots):
             if view is not None:
                 view.set_look(look)

@@ -9,7 +9,7 @@ from PySide6.QtGui import QColor, QFontMetricsF, QPainter, QPainterPath, QPainte
 from PySide6.QtWidgets import QGraphicsItem, QStyleOptionGraphicsItem, QWidget
 
 from app.bench.pictures import PICTURES, Shown
-from app.bench.pictures.base import PORT_RADIUS, pen, text
+from app.bench.pictures.base import PORT_RADIUS, growth, pen, text
 from app.look import SIGNS, Look, font
 from feedlib.plan import Join, Port
 
@@ -50,7 +50,7 @@ class PartItem(QGraphicsItem):
         for port in self.ports:
             reach = reach.united(QRectF(port.x() - GRAB, port.y() - GRAB, 2 * GRAB, 2 * GRAB))
         half = max(120.0, reach.width() / 2 + 8)
-        self._bounds = QRectF(-half, reach.top() - 34, 2 * half, reach.height() + 34 + TEXT_GAP + 2 * TEXT_LINE + 6)
+        self._bounds = QRectF(-half, reach.top() - 34, 2 * half, reach.height() + 34 + TEXT_GAP + 4 * TEXT_LINE)
 
     def port_at(self, number: int) -> QPointF:
         """Where a port (from 1) is on the bench."""
@@ -87,13 +87,13 @@ class PartItem(QGraphicsItem):
         self._paint_ports(painter, look)
         y = self.body.bottom() + TEXT_GAP
         if shown.placed.part.KIND != "radio":
-            text(painter, shown.name, QPointF(0, y), look.ink, bold=True)
-            y += TEXT_LINE
+            text(painter, shown.name, QPointF(0, y), look.ink, bold=True, grows=True)
+            y += TEXT_LINE * growth(painter)
         detail, state = picture.detail(shown), picture.state(shown)
         if detail:
             sign = f"{SIGNS[state]} " if state else ""
             colour = look.verdict(state) if state else look.soft
-            text(painter, sign + detail, QPointF(0, y), colour)
+            text(painter, sign + detail, QPointF(0, y), colour, grows=True)
         if self.trouble:
             self._paint_trouble(painter, look)
 
@@ -194,8 +194,8 @@ class FlagItem(QGraphicsItem):
         self.update()
 
     def boundingRect(self) -> QRectF:
-        top = self._stem + self.HEIGHT
-        return QRectF(-self._width / 2 - 1, -top - 1, self._width + 2, top + 2)
+        width, height = 1.7 * self._width, self._stem + 1.7 * self.HEIGHT
+        return QRectF(-width / 2 - 1, -height - 1, width + 2, height + 2)
 
     def paint(self, painter: QPainter, option: QStyleOptionGraphicsItem, widget: QWidget | None = None) -> None:
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)
@@ -203,11 +203,12 @@ class FlagItem(QGraphicsItem):
         stem.setStyle(Qt.PenStyle.DotLine)
         painter.setPen(stem)
         painter.drawLine(QPointF(0, -3), QPointF(0, -self._stem))
-        rect = QRectF(-self._width / 2, -self._stem - self.HEIGHT, self._width, self.HEIGHT)
+        width, height = self._width * growth(painter), self.HEIGHT * growth(painter)
+        rect = QRectF(-width / 2, -self._stem - height, width, height)
         painter.setPen(pen(self.look.hairline, 1.2))
         painter.setBrush(QColor(self.look.card))
         painter.drawRoundedRect(rect, 5, 5)
-        text(painter, self._words, QPointF(0, rect.top() + 2), self.look.ink, widest=400)
+        text(painter, self._words, QPointF(0, rect.top() + 2), self.look.ink, widest=400, grows=True)
 
 
 def port_key(port: Port) -> str:

@@ -111,6 +111,11 @@ def polyline(painter: QPainter, points: list[tuple[float, float]]) -> None:
     painter.drawPath(path)
 
 
+def growth(painter: QPainter) -> float:
+    """How much larger words are drawn on a bench that is zoomed out, so that they can still be read."""
+    return min(1.7, max(1.0, 0.95 / max(painter.worldTransform().m11(), 0.1)))
+
+
 def text(
     painter: QPainter,
     words: str,
@@ -120,9 +125,12 @@ def text(
     size: Literal["small", "text", "head"] = "small",
     bold: bool = False,
     widest: float = 230.0,
+    grows: bool = False,
 ) -> None:
-    """Words centred below a point, shortened to fit."""
+    """Words centred below a point, shortened to fit; some grow when the bench is seen from afar."""
     face = font(size, bold=bold)
+    if grows:
+        face.setPixelSize(round(face.pixelSize() * growth(painter)))
     painter.setFont(face)
     painter.setPen(QColor(colour))
     metrics = QFontMetricsF(face)

@@ -20,7 +20,10 @@ UNIT_HEIGHT = 19.0
 TALLEST = 2.4
 TICK_DEG = 45.0
 TICK_PITCH = 5.0
-POINTS = 33
+FEW_POINTS, MANY_POINTS = 33, 193
+"""Samples along a drawing; a section of more than a wave takes many."""
+DENSE_DEG = 180.0 * 40
+"""Longer sections ripple faster than can be drawn: then the crests are drawn."""
 
 
 def electrical_deg(part: Coax, cable: Cable | None, frequency_hz: float) -> float:
@@ -91,10 +94,16 @@ class CoaxPicture(Picture):
     @staticmethod
     def _heights(shown: Shown) -> Array:
         """Half-heights along the drawing, port 1 first; two are enough for a straight section."""
-        wave = shown.answer.swell(shown.placed.id, POINTS) if shown.answer is not None else None
+        part = shown.placed.part
+        assert isinstance(part, Coax)
+        degrees = electrical_deg(part, shown.plan.cables.get(part.cable), shown.plan.band.marked_hz)
+        points = FEW_POINTS if degrees < 360 else MANY_POINTS
+        wave = shown.answer.swell(shown.placed.id, points) if shown.answer is not None else None
         if wave is None or wave[2] == 0:
             return np.full(2, UNIT_HEIGHT)
         height: Array = np.minimum(np.abs(wave[1]) / abs(wave[2]), TALLEST) * UNIT_HEIGHT + 0.75
+        if degrees > DENSE_DEG:
+            height = np.max([np.roll(height, n) for n in range(-3, 4)], axis=0)
         straight = np.abs(height - np.linspace(height[0], height[-1], height.size)).max() < 0.15
         return height[[0, -1]] if straight else height
 
