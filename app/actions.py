@@ -77,7 +77,7 @@ def build_menus(window: Window, bar: QMenuBar) -> tuple[dict[str, QAction], dict
     return actions, menus
 
 
-def _runner(record: ActionRecord, window: Window) -> Callable[[], None]:
+def _runner(record: ActionRecord, window: Window) -> Callable[[], object]:
     return lambda: record.run(window)
 
 

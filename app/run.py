@@ -70,4 +70,4 @@ def draw_picture(plan: Plan, path: Path, out: Path, size: tuple[int, int], *, da
     buffer = QBuffer()
     QImageWriter(buffer, b"PNG").write(window.grab().toImage())
     window.close_without_asking()
-    write_atomically(out, buffer.data().data())
+    write_atomically(out, bytes(buffer.data().data()))

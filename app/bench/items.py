@@ -93,7 +93,8 @@ class PartItem(QGraphicsItem):
         if detail:
             sign = f"{SIGNS[state]} " if state else ""
             colour = look.verdict(state) if state else look.soft
-            text(painter, sign + detail, QPointF(0, y), colour, grows=True)
+            widest = max(230.0, self.body.width() + 90)
+            text(painter, sign + detail, QPointF(0, y), colour, widest=widest, grows=True)
         if self.trouble:
             self._paint_trouble(painter, look)
 

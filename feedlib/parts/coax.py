@@ -37,6 +37,7 @@ class Coax(Lines):
     cable: str = field("Cable")
     length_m: float = field("Length", unit="m", low=0)
     ends: tuple[CoaxEnd | None, CoaxEnd | None] = field("Ends", default=(None, None), omit_default=True)
+    matched_set: str | None = field("Matched set", default=None, hint="sections that share one cable, length and ends")
 
     @property
     def line_count(self) -> int:
