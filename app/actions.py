@@ -50,6 +50,11 @@ ACTIONS: tuple[ActionRecord, ...] = (
     ActionRecord("zoom_in", "View", "Zoom &in", STANDARD.ZoomIn, lambda w: w.bench.zoom(1.25), ""),
     ActionRecord("zoom_out", "View", "Zoom &out", STANDARD.ZoomOut, lambda w: w.bench.zoom(0.8), ""),
     ActionRecord(RULE, "View", "", None, lambda w: None),
+    ActionRecord(
+        "hold", "View", "&Hold this", "Ctrl+H", lambda w: w.store.hold(), "Keep the present curves to compare"
+    ),
+    ActionRecord("let_go", "View", "&Let go", "Ctrl+Shift+H", lambda w: w.store.let_go(), "Forget the held curves"),
+    ActionRecord(RULE, "View", "", None, lambda w: None),
     ActionRecord("theme_system", "View/Theme", "As the &system", None, lambda w: w.choose_theme("system"), ""),
     ActionRecord("theme_light", "View/Theme", "&Light", None, lambda w: w.choose_theme("light"), ""),
     ActionRecord("theme_dark", "View/Theme", "&Dark", None, lambda w: w.choose_theme("dark"), ""),

@@ -83,6 +83,7 @@ class Store(QObject):
     answer_changed = Signal()
     file_changed = Signal()
     stale_changed = Signal()
+    held_changed = Signal()
     selection_changed = Signal()
     hover_changed = Signal()
 
@@ -97,6 +98,7 @@ class Store(QObject):
         self.hovered: str | None = None
         self.stack = QUndoStack(self)
         self.stale = False
+        self.held: Answer | None = None
         self._topology: Topology | None = None
         self._solve_s = 0.0
         self._jobs = Jobs(self)
@@ -110,6 +112,7 @@ class Store(QObject):
     def open(self, plan: Plan, path: Path | None) -> None:
         """Begin with another plan; there is nothing to undo then."""
         self.stack.clear()
+        self.let_go()
         self.path = path
         self.select(())
         self._put(plan)
@@ -132,6 +135,18 @@ class Store(QObject):
         if part_id != self.hovered:
             self.hovered = part_id
             self.hover_changed.emit()
+
+    def hold(self) -> None:
+        """Keep the present answer to compare with, until it is let go."""
+        if self.answer is not None:
+            self.held = self.answer
+            self.held_changed.emit()
+
+    def let_go(self) -> None:
+        """Forget the held answer."""
+        if self.held is not None:
+            self.held = None
+            self.held_changed.emit()
 
     def solve_now(self) -> None:
         """Solve here and now."""

@@ -89,8 +89,10 @@ def test_a_small_size_is_drawn_as_it_is_or_refused(plan: Path, capsys: pytest.Ca
 
 @pytest.mark.parametrize(
     "size",
-    ["", "x", "1600", "1600x", "x1000", "0x0", "-1600x1000", "1600x1000x2", "1e3x1000", "1600,1000", "1600x99999999"]
-    + ["8001x1000", "٣٠٠٠x٣٠٠٠", "1600x1000\n"],
+    [
+        *("", "x", "1600", "1600x", "x1000", "0x0", "-1600x1000", "1600x1000x2", "1e3x1000", "1600,1000"),
+        *("1600x99999999", "8001x1000", "٣٠٠٠x٣٠٠٠", "1600x1000\n"),
+    ],
 )
 def test_a_size_that_is_none_is_refused(plan: Path, capsys: pytest.CaptureFixture[str], size: str) -> None:
     """One line, and no picture."""
