@@ -12,6 +12,7 @@ from pathlib import Path
 from PySide6.QtCore import QObject, Signal
 from PySide6.QtGui import QUndoCommand, QUndoStack
 
+from app.editing.edits import plain_text
 from app.jobs import Jobs
 from feedlib import Answer, Plan, Problem, SolveError, check, solve
 from feedlib.topology import Topology, compile_plan
@@ -21,7 +22,7 @@ class Edit(QUndoCommand):
     """One undoable act: the plan before and after. Edits with the same merge key run together into one."""
 
     def __init__(self, store: Store, text: str, after: Plan, merge: str | None) -> None:
-        super().__init__(text)
+        super().__init__(plain_text(text))  # behind a line break Qt would take a second text
         self._store, self._before, self._after, self._merge = store, store.plan, after, merge
 
     def redo(self) -> None:
@@ -125,7 +126,9 @@ class Store(QObject):
         self.file_changed.emit()
 
     def select(self, part_ids: tuple[str, ...]) -> None:
-        """Select parts (none = the plan itself)."""
+        """Select parts (none = the plan itself); what an answer that is behind still names may be gone."""
+        ids = {p.id for p in self.plan.parts}
+        part_ids = tuple(s for s in part_ids if s in ids)
         if part_ids != self.selected:
             self.selected = part_ids
             self.selection_changed.emit()

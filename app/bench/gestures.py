@@ -4,15 +4,20 @@ from __future__ import annotations
 
 from typing import Protocol
 
-from PySide6.QtCore import QPoint, QPointF, QRectF, Qt
+from PySide6.QtCore import QLineF, QPoint, QPointF, QRectF, Qt
 from PySide6.QtGui import QColor, QPainterPath
 from PySide6.QtWidgets import QGraphicsPathItem, QGraphicsRectItem, QGraphicsSimpleTextItem
 
+from app.bench.guides import Guides
 from app.bench.items import JoinItem, curve
 from app.bench.pictures.base import pen
-from app.bench.scene import GRID, BenchScene
+from app.bench.pictures.coax import degrees_of_width, electrical_deg
+from app.bench.scene import BenchScene
 from app.editing import edits
+from app.editing.wording import format_length, wheel_step_m
 from app.look import font
+from feedlib.conventions import guided_wavelength_m
+from feedlib.parts import Coax
 from feedlib.plan import Port
 
 
@@ -39,13 +44,19 @@ class Gesture:
 
 
 class MoveParts(Gesture):
-    """Drag the selected parts; they snap to the grid, and nothing is recorded before the release."""
+    """Drag the selected parts; they snap to others' lines or the grid. Nothing is recorded before the release.
+
+    A free port that comes near another free one joins it on release.
+    """
 
     def __init__(self, scene: BenchScene, start: QPointF, grabbed: str) -> None:
         super().__init__(scene, start)
         self.grabbed = grabbed
         self.from_at = {i: scene.parts[i].pos() for i in self.store.selected}
         self.moved = False
+        self.guides = Guides(scene, self.from_at)
+        self.hint = JoinHint(scene)
+        self.tie: tuple[Port, Port] | None = None
 
     def move(self, at: QPointF, free: bool) -> None:
         shift = at - self.start
@@ -54,26 +65,111 @@ class MoveParts(Gesture):
         self.moved = True
         if not free:
             lead = self.from_at[self.grabbed]
-            shift = QPointF(_snapped(lead.x() + shift.x()) - lead.x(), _snapped(lead.y() + shift.y()) - lead.y())
+            shift = self.guides.snapped(lead + shift) - lead
         for part_id, place in self.from_at.items():
             self.scene.parts[part_id].setPos(place + shift)
         self.scene.follow_places()
+        self.tie = self._meeting()
+        if self.tie is None:
+            self.hint.hide()
+        else:
+            a, b = (self.scene.parts[p.part].port_at(p.number) for p in self.tie)
+            self.hint.show(straight(a, b), f"join {self.tie[0]} to {self.tie[1]}", b, good=True)
+
+    def _meeting(self) -> tuple[Port, Port] | None:
+        """A free port of what is moved, and a free port of the rest that it has come near to."""
+        plan, scene = self.store.plan, self.scene
+        taken = {port for join in plan.joins for port in join}
+        found = []
+        for part_id in self.from_at:
+            for number, _ in enumerate(scene.parts[part_id].ports, start=1):
+                own = Port(part_id, number)
+                if own in taken:
+                    continue
+                here = scene.parts[part_id].port_at(number)
+                for other_id, item in scene.parts.items():
+                    if other_id in self.from_at or not item.sceneBoundingRect().adjusted(-20, -20, 20, 20).contains(
+                        here
+                    ):
+                        continue
+                    for n, _ in enumerate(item.ports, start=1):
+                        distance = QLineF(here, item.port_at(n)).length()
+                        if distance <= MEETING and Port(other_id, n) not in taken:
+                            found.append((distance, own, Port(other_id, n)))
+        return min(found)[1:] if found else None
 
     def release(self, at: QPointF, screen: QPoint) -> None:
+        self._clear()
         if not self.moved:
             return
         places = {i: (self.scene.parts[i].pos().x(), self.scene.parts[i].pos().y()) for i in self.from_at}
         name = self.store.plan.placed(self.grabbed).name if len(places) == 1 else f"{len(places)} parts"
-        self.store.edit(f"Move {name}", edits.moved(self.store.plan, places))
+        plan = edits.moved(self.store.plan, places)
+        if self.tie is None:
+            self.store.edit(f"Move {name}", plan)
+        else:
+            self.store.edit(f"Join {self.tie[0]} to {self.tie[1]}", edits.joined(plan, *self.tie))
 
     def cancel(self) -> None:
+        self._clear()
         for part_id, place in self.from_at.items():
-            self.scene.parts[part_id].setPos(place)
+            if part_id in self.scene.parts:
+                self.scene.parts[part_id].setPos(place)
         self.scene.follow_places()
 
+    def _clear(self) -> None:
+        self.guides.remove()
+        self.hint.remove()
 
-def _snapped(value: float) -> float:
-    return round(value / (GRID / 2)) * GRID / 2
+
+MEETING = 16.0
+"""How near two ports come to be joined when a part is moved."""
+
+
+class JoinHint:
+    """The join that would be made, and the words that say so or say why not."""
+
+    def __init__(self, scene: BenchScene) -> None:
+        self._scene = scene
+        self._line, self._words = QGraphicsPathItem(), QGraphicsSimpleTextItem()
+        self._line.setZValue(8)
+        self._words.setZValue(9)
+        self._words.setFont(font("small"))
+        self._words.setFlag(QGraphicsSimpleTextItem.GraphicsItemFlag.ItemIgnoresTransformations)
+        for item in (self._line, self._words):
+            item.hide()
+            scene.addItem(item)
+
+    def show(self, path: QPainterPath, words: str, at: QPointF, *, good: bool | None) -> None:
+        """good : True = will join, False = will not, None = nothing to join to yet."""
+        look = self._scene.look
+        colour = {True: look.holds, False: look.fails, None: look.soft}[good]
+        stroke = pen(colour, 2.4)
+        stroke.setStyle(Qt.PenStyle.SolidLine if good else Qt.PenStyle.DashLine)
+        self._line.setPen(stroke)
+        self._line.setPath(path)
+        self._words.setText(words)
+        self._words.setBrush(QColor(colour))
+        self._words.setPos(at + QPointF(14, 10))
+        self._line.show()
+        self._words.show()
+
+    def hide(self) -> None:
+        """Say nothing for now."""
+        self._line.hide()
+        self._words.hide()
+
+    def remove(self) -> None:
+        """Take it off the bench."""
+        self._scene.removeItem(self._line)
+        self._scene.removeItem(self._words)
+
+
+def straight(a: QPointF, b: QPointF) -> QPainterPath:
+    """A straight path."""
+    path = QPainterPath(a)
+    path.lineTo(b)
+    return path
 
 
 class BoxSelect(Gesture):
@@ -105,7 +201,7 @@ class BoxSelect(Gesture):
 
 
 class PullJoin(Gesture):
-    """Pull a join from a port: to another port, or into the empty bench to be offered what fits there."""
+    """Pull a join from a port: to another port, on to a full T (which gets one more), or into the empty bench."""
 
     def __init__(self, scene: BenchScene, start: QPointF, port: Port, offer: Offer) -> None:
         super().__init__(scene, start)
@@ -113,34 +209,32 @@ class PullJoin(Gesture):
         item = scene.parts[port.part]
         self.anchor = item.port_at(port.number)
         self.side = 1 if item.ports[port.number - 1].x() > item.body.center().x() else -1
-        self.line = QGraphicsPathItem()
-        self.line.setZValue(8)
-        self.words = QGraphicsSimpleTextItem()
-        self.words.setFont(font("small"))
-        self.words.setZValue(9)
-        scene.addItem(self.line)
-        scene.addItem(self.words)
+        self.hint = JoinHint(scene)
         taken = self.store.plan.mate(port) is not None
         self.refused = f"{port} is joined already; take that join away first" if taken else None
 
     def move(self, at: QPointF, free: bool) -> None:
         goal = self._goal(at)
         reason = self.refused or (edits.why_no_join(self.store.plan, self.port, goal) if goal else None)
-        look = self.scene.look
-        colour = look.fails if reason else look.holds if goal else look.soft
-        end = self.scene.parts[goal.part].port_at(goal.number) if goal else at
-        path: QPainterPath = curve(self.anchor, end, self.side, -self.side)
-        stroke = pen(colour, 2.4)
-        stroke.setStyle(Qt.PenStyle.SolidLine if goal and not reason else Qt.PenStyle.DashLine)
-        self.line.setPen(stroke)
-        self.line.setPath(path)
-        self.words.setText(reason or (f"join {self.port} to {goal}" if goal else ""))
-        self.words.setBrush(QColor(colour))
-        self.words.setPos(at + QPointF(14, 10))
+        item = self.scene.parts[goal.part] if goal else None
+        end = item.port_at(goal.number) if goal and item and goal.number <= len(item.ports) else at
+        words = reason or (f"join {self.port} to {goal}" if goal else "")
+        path = curve(self.anchor, end, self.side, -self.side)
+        self.hint.show(path, words, at, good=False if reason else True if goal else None)
 
     def _goal(self, at: QPointF) -> Port | None:
+        """The port at a place; on a junction's body its first free port, or one more when it is full."""
         goal = self.scene.port_under(at)
-        return None if goal == self.port else goal
+        under = self.scene.part_under(at)
+        if goal is not None and (self.store.plan.mate(goal) is None or under is None):
+            return None if goal == self.port else goal
+        if under is None or under.shown.placed.id == self.port.part:
+            return None
+        placed = self.store.plan.placed(under.shown.placed.id)
+        free = [p for p in placed.ports() if self.store.plan.mate(p) is None]
+        if free:
+            return free[0]
+        return Port(placed.id, placed.part.ports + 1) if edits.can_grow(placed.part) else goal
 
     def release(self, at: QPointF, screen: QPoint) -> None:
         self.cancel()
@@ -151,11 +245,56 @@ class PullJoin(Gesture):
             if (at - self.start).manhattanLength() > 12:
                 self.offer(self.port, at, screen)
         elif edits.why_no_join(self.store.plan, self.port, goal) is None:
-            self.store.edit(f"Join {self.port} to {goal}", edits.joined(self.store.plan, self.port, goal))
+            plan = self.store.plan
+            if goal.number > plan.placed(goal.part).part.ports:
+                plan = edits.with_ports(plan, goal.part, goal.number)
+            self.store.edit(f"Join {self.port} to {goal}", edits.joined(plan, self.port, goal))
 
     def cancel(self) -> None:
-        self.scene.removeItem(self.line)
+        self.hint.remove()
+
+
+class TurnEnd(Gesture):
+    """Drag a swell's end: the section gets longer or shorter, live, with its length beside the pointer."""
+
+    def __init__(self, scene: BenchScene, start: QPointF, part_id: str) -> None:
+        super().__init__(scene, start)
+        self.part_id = part_id
+        self.plan = self.store.plan
+        item = scene.parts[part_id]
+        self.centre_x, self.grip = item.pos().x(), abs(start.x() - item.pos().x()) - item.body.width() / 2
+        self.words = QGraphicsSimpleTextItem()
+        self.words.setFont(font("text", bold=True))
+        self.words.setZValue(9)
+        self.words.setFlag(QGraphicsSimpleTextItem.GraphicsItemFlag.ItemIgnoresTransformations)
+        self.words.setBrush(QColor(scene.look.ink))
+        scene.addItem(self.words)
+
+    def move(self, at: QPointF, free: bool) -> None:
+        part = self.plan.placed(self.part_id).part
+        assert isinstance(part, Coax)
+        cable = self.plan.cables.get(part.cable)
+        factor = cable.velocity_factor if cable is not None else 1.0
+        mark_hz = self.plan.band.marked_hz
+        degrees = degrees_of_width(2 * (abs(at.x() - self.centre_x) - self.grip))
+        step_m = wheel_step_m(frequency_hz=mark_hz, velocity_factor=factor) * (0.1 if free else 1)
+        length_m = round(degrees / 360 * guided_wavelength_m(mark_hz, factor) / step_m) * step_m
+        plan = edits.turned_length(self.plan, [self.part_id], length_m - part.length_m)
+        name = self.plan.placed(self.part_id).name
+        self.store.edit(f"Turn {name}", plan, merge=f"end {id(self)}")
+        now = self.store.plan.placed(self.part_id).part
+        assert isinstance(now, Coax)
+        length = format_length(now.length_m, "mm", frequency_hz=None, velocity_factor=None)
+        self.words.setText(f"{length}  {electrical_deg(now, cable, mark_hz):.1f}°")
+        self.words.setPos(at + QPointF(16, -26))
+
+    def release(self, at: QPointF, screen: QPoint) -> None:
         self.scene.removeItem(self.words)
+
+    def cancel(self) -> None:
+        self.scene.removeItem(self.words)
+        if self.store.plan != self.plan:
+            self.store.stack.undo()
 
 
 def hover_join(scene: BenchScene, at: QPointF) -> None:

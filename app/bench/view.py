@@ -15,7 +15,8 @@ from PySide6.QtGui import (
 )
 from PySide6.QtWidgets import QGraphicsView, QWidget
 
-from app.bench.gestures import BoxSelect, Gesture, MoveParts, PullJoin, hover_join
+from app.bench.gestures import BoxSelect, Gesture, MoveParts, PullJoin, TurnEnd, hover_join
+from app.bench.items import PartItem
 from app.bench.scene import BenchScene
 from app.editing import edits
 from app.editing.wording import wheel_step_m
@@ -133,7 +134,9 @@ class BenchView(QGraphicsView):
                 self.store.select(chosen)
             elif part_id not in selected:
                 self.store.select((part_id,))
-            if part_id in self.store.selected:
+            if part.selected and self._on_swell_end(part, at):
+                self._gesture = TurnEnd(self.bench, at, part_id)
+            elif part_id in self.store.selected:
                 self._gesture = MoveParts(self.bench, at, part_id)
             return
         join = self.bench.join_under(at)
@@ -145,6 +148,15 @@ class BenchView(QGraphicsView):
         self.store.select(keep)
         self.bench.select_join(None)
         self._gesture = BoxSelect(self.bench, at, keep)
+
+    @staticmethod
+    def _on_swell_end(part: PartItem, at: QPointF) -> bool:
+        """Whether a point is on the end of a coax, where its length can be dragged."""
+        if not isinstance(part.shown.placed.part, Coax):
+            return False
+        here = part.mapFromScene(at)
+        end = min(12.0, part.body.width() / 4)
+        return abs(here.y()) <= part.body.height() / 2 and abs(here.x()) >= part.body.width() / 2 - end
 
     def _offer(self, port: Port, at: QPointF, screen: QPoint) -> None:
         self.offer_asked.emit(port, at, screen)
@@ -165,6 +177,8 @@ class BenchView(QGraphicsView):
             hover_join(self.bench, at)
             port = self.bench.port_under(at)
             over = Qt.CursorShape.CrossCursor if port is not None else Qt.CursorShape.ArrowCursor
+            if port is None and part is not None and part.selected and self._on_swell_end(part, at):
+                over = Qt.CursorShape.SizeHorCursor
             self.viewport().setCursor(over)
 
     def mouseReleaseEvent(self, event: QMouseEvent) -> None:

@@ -164,6 +164,13 @@ def retitled(plan: Plan, *, title: str | None = None, notes: str | None = None) 
     return replace(plan, title=plan.title if title is None else title, notes=plan.notes if notes is None else notes)
 
 
+def can_grow(part: Part) -> bool:
+    """Whether a part may get one port more."""
+    if isinstance(part, Tee):
+        return part.ports < 1026
+    return isinstance(part, Splitter) and part.form in ("wilkinson", "resistive") and part.outputs < 1024
+
+
 def with_ports(plan: Plan, part_id: str, ports: int) -> Plan:
     """A tee or splitter with so many ports."""
     part = plan.placed(part_id).part

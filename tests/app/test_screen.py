@@ -14,6 +14,8 @@ from pathlib import Path
 
 import pytest
 
+from app.screen import PACKAGES
+
 ROOT = Path(__file__).parent.parent.parent
 SCREEN = ("DISPLAY", "WAYLAND_DISPLAY", "XDG_RUNTIME_DIR", "XDG_SESSION_TYPE", "QT_QPA_PLATFORM", "XAUTHORITY")
 
@@ -128,3 +130,8 @@ def test_a_library_that_qt_misses(tmp_path: Path, question: str) -> None:
     assert "\n" not in sentence
     assert "libEGL.so.1" in sentence
     assert "apt install libegl1 " in sentence
+
+
+def test_the_readme_asks_for_the_same_packages() -> None:
+    """One list for those who read and those who are told."""
+    assert PACKAGES in (ROOT / "README.md").read_text(encoding="utf-8")

@@ -37,6 +37,11 @@ def drawn_width(degrees: float) -> float:
     return min(360.0, 44 + 78 * math.log2(1 + degrees / 45))
 
 
+def degrees_of_width(width: float) -> float:
+    """The electrical length that is drawn so wide."""
+    return float(max(0.0, 45 * (2 ** ((min(width, 360.0) - 44) / 78) - 1)))
+
+
 class CoaxPicture(Picture):
     """The swell, in the colour of its characteristic impedance, with a tick every 45 electrical degrees."""
 
