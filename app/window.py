@@ -212,7 +212,9 @@ class Window(QMainWindow):
             if name.lower().endswith(".feedplan"):
                 self.files.open(Path(name))
                 return
-            self.placing.put_file(Path(name), at, None)
+            under = self.bench.bench.part_under(at)
+            onto = None if under is None else under.shown.placed.id
+            self.placing.put_file(Path(name), at, self.bench.bench.join_under(at), onto)
 
     def _offer(self, port: Port, at: QPointF, screen: QPoint) -> None:
         """The parts that may stand where a join was pulled to."""

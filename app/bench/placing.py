@@ -14,7 +14,7 @@ from app.editing import edits
 from app.reporting import say
 from app.store import Store
 from feedlib import FeedError, Plan
-from feedlib.parts import Measured, Part, TouchstoneText
+from feedlib.parts import Antenna, AntennaImpedance, Measured, Part, TouchstoneText
 from feedlib.plan import Join, Port
 
 APART = 56.0
@@ -43,18 +43,24 @@ class Placing(QObject):
         plan, part = self.entries[key].make(self.store.plan)
         self._put(plan, part, at, join)
 
-    def put_file(self, path: Path, at: QPointF, join: Join | None) -> None:
-        """Put a measured part, made of a Touchstone file, at a place."""
+    def put_file(self, path: Path, at: QPointF, join: Join | None, onto: str | None = None) -> None:
+        """Put a measured part, made of a Touchstone file, at a place; on an antenna it becomes its impedance."""
+        plan = self.store.plan
+        antenna = plan.placed(onto) if onto is not None and isinstance(plan.placed(onto).part, Antenna) else None
         try:
             if path.stat().st_size > MAX_FILE_BYTES:
                 raise FeedError(f"the file has more than {MAX_FILE_BYTES / 1e6:.0f} MB")
-            text = path.read_text(encoding="utf-8", errors="replace")
-            part = Measured(touchstone=TouchstoneText(name=path.name, text=text))
+            file = TouchstoneText(name=path.name, text=path.read_text(encoding="utf-8", errors="replace"))
+            if antenna is not None and file.data.ports == 1:
+                changed = edits.changed_part(plan, antenna.id, impedance=AntennaImpedance(touchstone=file))
+                self.store.edit(f"Measured impedance of {antenna.name}", changed)
+                self.store.select((antenna.id,))
+                return
         except (OSError, FeedError) as error:
             reason = getattr(error, "strerror", None) or getattr(error, "reason", None) or error
             say(self.window, "The file cannot be used", f"{path.name}: {reason}")
             return
-        self._put(self.store.plan, part, at, join)
+        self._put(plan, Measured(touchstone=file), at, join)
 
     def put_behind(self, key: str, middle: QPointF) -> None:
         """Put a new part behind the selected one and join it there; in the middle when none is selected."""
