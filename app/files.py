@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from pathlib import Path
 
-from PySide6.QtCore import QObject
+from PySide6.QtCore import QObject, Qt
 from PySide6.QtWidgets import QFileDialog, QMessageBox, QWidget
 
 from app.editing.edits import new_plan
@@ -57,13 +57,27 @@ class Files(QObject):
 
     def save_as(self) -> bool:
         """Save under a name that is asked for."""
-        title = "".join(c for c in self.store.plan.title if c.isalnum() or c in " -_,") or "harness"
-        start = self.store.path or self._folder() / f"{title.strip()}{SUFFIX}"
+        title = "".join(c for c in self.store.plan.title if c.isalnum() or c in " -_,").strip()[:60] or "harness"
+        start = self.store.path or self._folder() / f"{title}{SUFFIX}"
         name, _ = QFileDialog.getSaveFileName(self.window, "Save the plan", str(start), FILTER)
         if not name:
             return False
         path = Path(name)
-        return self._write(path if path.suffix else path.with_suffix(SUFFIX))
+        if not path.suffix[1:].isalpha():  # "2.4 GHz pair" has none
+            path = path.with_name(path.name + SUFFIX)
+            if path.exists() and not self._may_replace(path):  # the dialog has asked about another name
+                return False
+        return self._write(path)
+
+    def _may_replace(self, path: Path) -> bool:
+        box = QMessageBox(self.window)
+        box.setIcon(QMessageBox.Icon.Question)
+        box.setWindowTitle("Replace the file?")
+        box.setTextFormat(Qt.TextFormat.PlainText)
+        box.setText(f"{path.name} is there already. Replace it?")
+        box.setStandardButtons(QMessageBox.StandardButton.Yes | QMessageBox.StandardButton.No)
+        box.setDefaultButton(QMessageBox.StandardButton.No)
+        return box.exec() == QMessageBox.StandardButton.Yes
 
     def _write(self, path: Path) -> bool:
         try:

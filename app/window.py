@@ -7,7 +7,17 @@ from typing import TYPE_CHECKING, Literal
 
 from PySide6.QtCore import QByteArray, QPoint, QPointF, QSettings, Qt
 from PySide6.QtGui import QCloseEvent, QColor, QGuiApplication, QPalette
-from PySide6.QtWidgets import QFileDialog, QHBoxLayout, QLabel, QMainWindow, QMenu, QSplitter, QVBoxLayout, QWidget
+from PySide6.QtWidgets import (
+    QFileDialog,
+    QHBoxLayout,
+    QLabel,
+    QMainWindow,
+    QMenu,
+    QSizePolicy,
+    QSplitter,
+    QVBoxLayout,
+    QWidget,
+)
 
 from app.actions import build_menus
 from app.bench.placing import Placing
@@ -17,9 +27,10 @@ from app.editing.edits import new_plan
 from app.files import Files
 from app.look import DARK, LIGHT, Look, font, palette_of, system_look
 from app.panels.drawer import PartsDrawer
-from app.panels.drawer_entries import entries
+from app.panels.drawer_entries import MEASURED, entries
 from app.panels.rail import FrequencyRail
 from app.panels.side_sheet import SideSheet
+from app.panels.style import button_text
 from app.panels.verdicts import VerdictStrip
 from app.store import Store
 from feedlib import Plan
@@ -30,6 +41,7 @@ if TYPE_CHECKING:
     from app.plots.row import PlotRow
 
 Theme = Literal["system", "light", "dark"]
+MOST_LETTERS = 80
 
 
 class Window(QMainWindow):
@@ -70,6 +82,7 @@ class Window(QMainWindow):
         self.title.setFont(font("head", bold=True))
         for label in (self.title, self.band, self.hint):
             label.setTextFormat(Qt.TextFormat.PlainText)
+        self.title.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Preferred)
         header.addWidget(self.title, 1)
         header.addWidget(self.band)
         above = QWidget()
@@ -143,7 +156,7 @@ class Window(QMainWindow):
             can = store.stack.canUndoChanged if which == "undo" else store.stack.canRedoChanged
             words = store.stack.undoTextChanged if which == "undo" else store.stack.redoTextChanged
             can.connect(action.setEnabled)
-            words.connect(lambda text, a=action, n=name: a.setText(f"{n} {text}".rstrip()))
+            words.connect(lambda text, a=action, n=name: a.setText(button_text(f"{n} {shortened(text)}".rstrip())))
             action.setEnabled(False)
         self.drawer.asked.connect(lambda key: self.placing.put_behind(key, self._middle()))
         self.drawer.file_asked.connect(lambda: self._measured(self._middle()))
@@ -197,7 +210,7 @@ class Window(QMainWindow):
     def _dropped(self, key: str, at: QPointF, join: Join | None) -> None:
         if key in entries():
             self.placing.put(key, at, join)
-        else:
+        elif key == MEASURED:
             self._measured(at, join)
 
     def _measured(self, at: QPointF, join: Join | None = None) -> None:
@@ -235,7 +248,8 @@ class Window(QMainWindow):
         self.setWindowModified(self.files.unsaved)
         name = edits.plain_text(self.store.plan.title) or "Untitled"
         file = f" ({self.store.path.name})" if self.store.path is not None else ""
-        self.setWindowTitle(f"{name}{file}[*] – Feedwright")
+        shown = f"{shortened(name)}{file}".replace("[*]", "[*][*]")  # only the last one is Qt's mark of change
+        self.setWindowTitle(f"{shown}[*] – Feedwright")
         self.title.setText(f"{name}   ·   edited" if self.files.unsaved else name)
 
     def _tell_plan(self) -> None:
@@ -274,6 +288,11 @@ class Window(QMainWindow):
             self._settings.setValue("window/split", self._split.saveState())
         self.store.close()
         event.accept()
+
+
+def shortened(text: str) -> str:
+    """A text as it may stand in a title or a menu."""
+    return text if len(text) <= MOST_LETTERS else text[: MOST_LETTERS - 1] + "…"
 
 
 def _is_example(path: Path | None) -> bool:

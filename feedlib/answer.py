@@ -112,7 +112,7 @@ class Figures:
     @property
     def harness_s(self) -> ComplexArray:
         """(F, P, P) with every antenna and the radio taken off, at the plan's reference."""
-        return self._solved.harness_s[..., self._part].transpose(2, 0, 1)
+        return self._solved.harness_s_at(self._part).transpose(2, 0, 1)
 
     @property
     def isolation_db(self) -> Array:
@@ -260,12 +260,11 @@ class Solved:
         if not self.antennas:
             return _frozen(np.zeros(self.reflected_share.shape))
         wanted = np.array([a.target.amplitude for *_, a in self.antennas])[:, None]
-        size = _real_product(self.antenna_current_a, self.antenna_current_a) / wanted**2
-        least = size.min(axis=-2)
         with np.errstate(divide="ignore", invalid="ignore"):
-            spread = 10 * np.log10(size.max(axis=-2) / least)
-        if not least.all():
-            spread[least == 0] = np.inf
+            level = np.log10(np.abs(self.antenna_current_a) / wanted)
+            least = level.min(axis=-2)
+            spread = 20 * (level.max(axis=-2) - least)
+        spread[np.isneginf(least)] = np.inf
         return _frozen(spread)
 
     @cached_property
@@ -275,8 +274,11 @@ class Solved:
 
     @cached_property
     def harness_loss_db(self) -> Array:
+        delivered, entered = self.antenna_share.sum(axis=-2), 1 - self.reflected_share
         with np.errstate(divide="ignore", invalid="ignore"):
-            return _frozen(-10 * np.log10(self.antenna_share.sum(axis=-2) / (1 - self.reflected_share)) + 0.0)
+            loss = -10 * np.log10(delivered / entered) + 0.0
+        loss[(delivered <= 0) | (entered <= 0)] = np.inf  # nothing arrives, whatever rounding says
+        return _frozen(loss)
 
     @cached_property
     def part_loss(self) -> dict[str, Array]:
@@ -289,7 +291,7 @@ class Solved:
                 lost = power[edge] if sign > 0 else -power[edge]
                 for edge, sign in rest:
                     lost = lost + power[edge] if sign > 0 else lost - power[edge]
-                found[placed.id] = lost
+                found[placed.id] = _frozen(np.asarray(lost))
         return found
 
     @staticmethod
@@ -325,6 +327,12 @@ class Solved:
     def harness_s(self) -> ComplexArray:
         """(P, P, F)"""
         return _frozen(harness_s(self._network or self._network_at(slice(None)), self.terminals))
+
+    def harness_s_at(self, part: slice) -> ComplexArray:
+        """(P, P, F) at some frequencies; made for them alone where all would be too much."""
+        if bytes_of(len(self.antennas) + 1, self.frequency_hz.size) <= MAX_BYTES:
+            return self.harness_s[..., part]
+        return _frozen(harness_s(self._network_at(part), self.terminals))
 
     @cached_property
     def isolation_db(self) -> Array:

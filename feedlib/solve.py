@@ -11,7 +11,7 @@ from feedlib.flows import drive_in_slices, line_values
 from feedlib.parts import Coax, Radio
 from feedlib.plan import Plan
 from feedlib.topology import Topology, compile_plan
-from feedlib.undetermined import refuse_undetermined
+from feedlib.undetermined import is_short, refuse_undetermined
 
 
 def solve(plan: Plan, topology: Topology | None = None) -> Answer:
@@ -24,11 +24,12 @@ def solve(plan: Plan, topology: Topology | None = None) -> Answer:
     frequency_hz = np.concatenate(
         [grid_hz, [band.start_hz, band.stop_hz], [c.hz for c in plan.channels], [band.marked_hz]]
     )
+    frequency_hz.flags.writeable = False
     _refuse_uncovered(plan, frequency_hz)
     _refuse_missing_cables(plan)
     if topology is None or not topology.fits(plan):
         topology = compile_plan(plan)
-    if topology.has_loops:
+    if topology.has_loops or sum(is_short(p.part) for p in plan.parts) > 1:
         refuse_undetermined(plan)
     values = line_values(plan, topology)
     flows, network = drive_in_slices(plan, topology, values, frequency_hz, radio)

@@ -1,11 +1,18 @@
-"""Loops without length, loss or impedance: their circulating current has no single value, so they are refused."""
+"""Loops without length, loss or impedance: their circulating current has no single value, so they are refused.
+
+Ports between which there is nothing share a voltage, or have it in a fixed ratio where ideal transformers tie them.
+A tie between ports that are tied already closes a loop: with the same ratio both ways its current is free; with
+another ratio it holds the voltage at zero, as a short does. Known by union-find with ratios.
+"""
 
 from __future__ import annotations
 
+import math
+from collections import deque
 from collections.abc import Iterator
 
 from feedlib.errors import SolveError
-from feedlib.parts import Antenna, Load, Lumped
+from feedlib.parts import Antenna, Load, Lumped, Radio, Transformer
 from feedlib.parts.base import Junction, Lines, Part
 from feedlib.plan import Placed, Plan, Port
 
@@ -13,36 +20,77 @@ GROUND = Port("", 0)
 
 
 def refuse_undetermined(plan: Plan) -> None:
-    """Raise SolveError naming a part of a loop made of joins, tees, zero lengths and shorts only."""
-    ties = [(placed, a, b) for placed in plan.parts for a, b in _ties(placed)]
-    if not ties:
-        return
-    head: dict[Port, Port] = {}
+    """Raise SolveError naming a part of a loop made of joins, tees, transformers, zero lengths and shorts only.
+
+    Only what the radio or an antenna reaches counts; the rest is not solved.
+    """
+    reached = _reached(plan)
+    nets = _Nets()
     for a, b in plan.joins:
-        head[a] = b
-    for placed, a, b in ties:
-        first, second = _head(head, a), _head(head, b)
-        if first == second:
-            raise SolveError(
-                "it closes a loop without length or loss, whose circulating current is not determined; "
-                "give a section in it a length or take one join away",
-                part=placed.id,
-            )
-        head[first] = second
+        nets.tie(a, b, 1.0)
+    for placed in plan.parts:
+        if placed.id not in reached:
+            continue
+        for a, b, ratio in _ties(placed):
+            if not nets.tie(a, b, ratio):
+                raise SolveError(
+                    "it closes a loop without length or loss, whose circulating current is not determined; "
+                    "give a section in it a length or take one join away",
+                    part=placed.id,
+                )
 
 
-def _ties(placed: Placed) -> Iterator[tuple[Port, Port]]:
-    """The pairs of its ports (or port and shield) between which there is nothing."""
+class _Nets:
+    """Ports tied together: V(port) = ratio * V(head)."""
+
+    def __init__(self) -> None:
+        self._above: dict[Port, tuple[Port, float]] = {}
+
+    def tie(self, a: Port, b: Port, ratio: float) -> bool:
+        """Tie V(a) = ratio * V(b); False when that leaves a current free."""
+        (head_a, ratio_a), (head_b, ratio_b) = self._head(a), self._head(b)
+        if head_a != head_b:
+            # the ground stays a head, so that what it holds is known
+            if head_a == GROUND:
+                head_a, ratio_a, head_b, ratio_b, ratio = head_b, ratio_b, head_a, ratio_a, 1 / ratio
+            self._above[head_a] = (head_b, ratio * ratio_b / ratio_a)
+            return True
+        if head_a == GROUND or math.isclose(ratio_a, ratio * ratio_b, rel_tol=1e-12):
+            return False
+        self._above[head_a] = (GROUND, 1.0)
+        return True
+
+    def _head(self, port: Port) -> tuple[Port, float]:
+        ratio = 1.0
+        while port in self._above:
+            port, step = self._above[port]
+            ratio *= step
+        return port, ratio
+
+
+def _ties(placed: Placed) -> Iterator[tuple[Port, Port, float]]:
+    """The pairs of its ports (or port and shield) whose voltages it ties, with V(first) = ratio * V(second)."""
     part, ports = placed.part, placed.ports()
     if isinstance(part, Junction):
         for port in ports[1:]:
-            yield ports[0], port
+            yield ports[0], port, 1.0
+    elif isinstance(part, Transformer):
+        yield ports[0], ports[1], part.ratio
     elif (isinstance(part, Lines) and _no_length(part)) or (
         isinstance(part, Lumped) and (part.place == "shunt" or part.is_short)
     ):
-        yield ports[0], ports[1]
-    if _shorts(part):
-        yield ports[0], GROUND
+        yield ports[0], ports[1], 1.0
+    if is_short(part):
+        yield ports[0], GROUND, 1.0
+
+
+def is_short(part: Part) -> bool:
+    """Whether it ties its port to the shield with nothing between."""
+    return (
+        (isinstance(part, Load) and part.impedance_ohm == 0)
+        or (isinstance(part, Antenna) and part.impedance.fixed_ohm == 0)
+        or (isinstance(part, Lumped) and part.place == "shunt" and part.is_short)
+    )
 
 
 def _no_length(part: Part) -> bool:
@@ -51,15 +99,16 @@ def _no_length(part: Part) -> bool:
     return all(end is None or end.length_m == 0 for end in getattr(part, "ends", ()))
 
 
-def _shorts(part: Part) -> bool:
-    return (
-        (isinstance(part, Load) and part.impedance_ohm == 0)
-        or (isinstance(part, Antenna) and part.impedance.fixed_ohm == 0)
-        or (isinstance(part, Lumped) and part.place == "shunt" and part.is_short)
-    )
-
-
-def _head(head: dict[Port, Port], port: Port) -> Port:
-    while port in head:
-        port = head[port]
-    return port
+def _reached(plan: Plan) -> set[str]:
+    beside: dict[str, list[str]] = {p.id: [] for p in plan.parts}
+    for a, b in plan.joins:
+        beside[a.part].append(b.part)
+        beside[b.part].append(a.part)
+    found = {p.id for p in plan.parts if isinstance(p.part, Radio | Antenna)}
+    waiting = deque(found)
+    while waiting:
+        for other in beside[waiting.popleft()]:
+            if other not in found:
+                found.add(other)
+                waiting.append(other)
+    return found

@@ -276,7 +276,8 @@ def random_plans(draw: st.DrawFn, *, rings: bool = True, reciprocal: bool = Fals
         sketch.top["sweep"] = {"start_hz": LOW_HZ, "stop_hz": HIGH_HZ, "points": draw(st.integers(2, 4))}
     impedance = draw(st.one_of(st.just(50 + 0j), complex_ohm(5)))
     radio = sketch.add("radio", impedance_ohm=impedance, power_w=draw(number(0.01, 100)))
-    open_ports = grow(draw, sketch, f"{radio}:1", draw(st.sampled_from([5, 0, 1, 2, 3, 4, 6, 7, 8, 9, 10, 12])), reciprocal=reciprocal)
+    steps = draw(st.sampled_from([5, 0, 1, 2, 3, 4, 6, 7, 8, 9, 10, 12]))
+    open_ports = grow(draw, sketch, f"{radio}:1", steps, reciprocal=reciprocal)
     for _ in range(draw(st.sampled_from([2, 0, 1, 3])) if rings else 0):
         if len(open_ports) < 2:
             break
@@ -345,8 +346,6 @@ def doubled(plan: Plan, part_id: str) -> Plan:
     parts += [Placed("beside", twice), Placed("split 1", tee), Placed("split 2", tee)]
     moves = {Port(part_id, n): Port(f"split {n}", 1) for n in (1, 2)}
     joins = [(moved(a, moves), moved(b, moves)) for a, b in plan.joins]
-    joins += [
-        (Port(f"split {n}", arm), Port(name, n)) for n in (1, 2) for arm, name in ((2, part_id), (3, "beside"))
-    ]
+    joins += [(Port(f"split {n}", arm), Port(name, n)) for n in (1, 2) for arm, name in ((2, part_id), (3, "beside"))]
     cables = {**plan.cables, "twice": dataclasses.replace(cable, z0_ohm=2 * cable.z0_ohm)}
     return dataclasses.replace(with_parts(plan, parts, joins), cables=cables)

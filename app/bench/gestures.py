@@ -42,6 +42,10 @@ class Gesture:
     def cancel(self) -> None:
         """Esc, or another button."""
 
+    def drop(self) -> None:
+        """Something else has changed the plan meanwhile: end without a trace."""
+        self.cancel()
+
 
 class MoveParts(Gesture):
     """Drag the selected parts; they snap to others' lines or the grid. Nothing is recorded before the release.
@@ -112,9 +116,9 @@ class MoveParts(Gesture):
 
     def cancel(self) -> None:
         self._clear()
-        for part_id, place in self.from_at.items():
-            if part_id in self.scene.parts:
-                self.scene.parts[part_id].setPos(place)
+        for placed in self.store.plan.parts:
+            if placed.id in self.from_at:
+                self.scene.parts[placed.id].setPos(QPointF(*placed.at))
         self.scene.follow_places()
 
     def _clear(self) -> None:
@@ -261,6 +265,7 @@ class TurnEnd(Gesture):
         super().__init__(scene, start)
         self.part_id = part_id
         self.plan = self.store.plan
+        self.moved = False
         item = scene.parts[part_id]
         self.centre_x, self.grip = item.pos().x(), abs(start.x() - item.pos().x()) - item.body.width() / 2
         self.words = QGraphicsSimpleTextItem()
@@ -271,6 +276,9 @@ class TurnEnd(Gesture):
         scene.addItem(self.words)
 
     def move(self, at: QPointF, free: bool) -> None:
+        if not self.moved and (at - self.start).manhattanLength() < 4:
+            return
+        self.moved = True
         part = self.plan.placed(self.part_id).part
         assert isinstance(part, Coax)
         cable = self.plan.cables.get(part.cable)
@@ -292,9 +300,12 @@ class TurnEnd(Gesture):
         self.scene.removeItem(self.words)
 
     def cancel(self) -> None:
-        self.scene.removeItem(self.words)
+        self.drop()
         if self.store.plan != self.plan:
             self.store.stack.undo()
+
+    def drop(self) -> None:
+        self.scene.removeItem(self.words)
 
 
 def hover_join(scene: BenchScene, at: QPointF) -> None:

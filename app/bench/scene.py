@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import html
+
 import numpy as np
 from PySide6.QtCore import QObject, QPointF, QRect, QRectF
 from PySide6.QtGui import QColor, QPainter
@@ -15,7 +17,7 @@ from app.editing.wording import format_impedance
 from app.look import Look
 from app.store import Store
 from feedlib import Plan
-from feedlib.parts.base import Junction, ManyPort
+from feedlib.parts.base import Junction, ManyPort, Part
 from feedlib.parts.radio import Radio
 from feedlib.plan import Join, Placed, Port
 
@@ -35,7 +37,7 @@ class BenchScene(QGraphicsScene):
         self.flags: dict[Join, FlagItem] = {}
         self.selected_join: Join | None = None
         self._dials: dict[str, Dial] = {}
-        self._answered: set[str] = set()
+        self._answered: dict[str, type[Part]] = {}
         self.setItemIndexMethod(QGraphicsScene.ItemIndexMethod.NoIndex)
         store.plan_changed.connect(self._follow_plan)
         store.answer_changed.connect(self.show_answer)
@@ -93,7 +95,7 @@ class BenchScene(QGraphicsScene):
         """Repaint everything from the store's answer."""
         answer = self.store.answer
         self._dials = dials_of(answer)
-        self._answered = set() if answer is None else {p.id for p in answer.plan.parts}
+        self._answered = {} if answer is None else {p.id: type(p.part) for p in answer.plan.parts}
         self._show_all()
         self._mark_troubles()
         self._show_flags()
@@ -105,7 +107,8 @@ class BenchScene(QGraphicsScene):
 
     def _shown(self, placed: Placed) -> Shown:
         store = self.store
-        answer = store.answer if placed.id in self._answered else None  # it may be behind the plan for a moment
+        known = self._answered.get(placed.id) is type(placed.part)
+        answer = store.answer if known else None  # it may be behind the plan for a moment
         return Shown(placed, store.plan, answer, self.look, store.hovered == placed.id, self._dials.get(placed.id))
 
     def _mark_troubles(self) -> None:
@@ -117,8 +120,8 @@ class BenchScene(QGraphicsScene):
         for part_id, item in self.parts.items():
             item.trouble = part_id in stopped
             item.open_ports = frozenset(range(1, len(item.ports) + 1)) - ports.get(part_id, set())
-            told = [f"{p.text} {p.advice}" for p in self.store.problems if p.part_id == part_id]
-            item.setToolTip("\n".join(told))
+            told = [html.escape(f"{p.text} {p.advice}") for p in self.store.problems if p.part_id == part_id]
+            item.setToolTip(f"<p>{'<br>'.join(told)}</p>" if told else "")
 
     def _show_flags(self) -> None:
         """Flags at the joins of the radio, of junctions and of splitters, and of what is selected."""

@@ -17,6 +17,7 @@ from PySide6.QtWidgets import QGraphicsView, QWidget
 
 from app.bench.gestures import BoxSelect, Gesture, MoveParts, PullJoin, TurnEnd, hover_join
 from app.bench.items import PartItem
+from app.bench.pictures.coax import WIDEST
 from app.bench.scene import BenchScene
 from app.editing import edits
 from app.editing.wording import wheel_step_m
@@ -62,6 +63,7 @@ class BenchView(QGraphicsView):
         self._pan: QPoint | None = None
         self._fitted = True
         store.file_changed.connect(self.fit)
+        store.plan_changed.connect(self._drop_gesture)
 
     def set_look(self, look: Look) -> None:
         """Draw in another theme."""
@@ -110,8 +112,7 @@ class BenchView(QGraphicsView):
 
     def mousePressEvent(self, event: QMouseEvent) -> None:
         if self._gesture is not None:
-            self._gesture.cancel()
-            self._gesture = None
+            self._cancel_gesture()
             return
         if event.button() == Qt.MouseButton.MiddleButton:
             self._pan = event.position().toPoint()
@@ -119,6 +120,20 @@ class BenchView(QGraphicsView):
         elif event.button() == Qt.MouseButton.LeftButton:
             more = bool(event.modifiers() & (Qt.KeyboardModifier.ShiftModifier | Qt.KeyboardModifier.ControlModifier))
             self._begin(self.mapToScene(event.position().toPoint()), more)
+
+    def mouseDoubleClickEvent(self, event: QMouseEvent) -> None:
+        self.mousePressEvent(event)  # fast clicking is clicking
+
+    def _cancel_gesture(self) -> None:
+        gesture, self._gesture = self._gesture, None
+        if gesture is not None:
+            gesture.cancel()
+
+    def _drop_gesture(self) -> None:
+        """The plan was changed by something else than the gesture."""
+        gesture, self._gesture = self._gesture, None
+        if gesture is not None:
+            gesture.drop()
 
     def _begin(self, at: QPointF, more: bool) -> None:
         port = self.bench.port_under(at)
@@ -129,12 +144,13 @@ class BenchView(QGraphicsView):
         if part is not None:
             part_id = part.shown.placed.id
             selected = self.store.selected
+            at_end = part.selected and self._on_swell_end(part, at)
             if more:
                 chosen = tuple(s for s in selected if s != part_id) if part_id in selected else (*selected, part_id)
                 self.store.select(chosen)
             elif part_id not in selected:
                 self.store.select((part_id,))
-            if part.selected and self._on_swell_end(part, at):
+            if at_end and part.selected:
                 self._gesture = TurnEnd(self.bench, at, part_id)
             elif part_id in self.store.selected:
                 self._gesture = MoveParts(self.bench, at, part_id)
@@ -151,8 +167,8 @@ class BenchView(QGraphicsView):
 
     @staticmethod
     def _on_swell_end(part: PartItem, at: QPointF) -> bool:
-        """Whether a point is on the end of a coax, where its length can be dragged."""
-        if not isinstance(part.shown.placed.part, Coax):
+        """Whether a point is on the end of a coax, where its length can be dragged; the longest are not to scale."""
+        if not isinstance(part.shown.placed.part, Coax) or part.body.width() >= WIDEST:
             return False
         here = part.mapFromScene(at)
         end = min(12.0, part.body.width() / 4)
@@ -169,8 +185,12 @@ class BenchView(QGraphicsView):
             self._pan = here
             self.translate(shift.x() / self.transform().m11(), shift.y() / self.transform().m22())
             self._fitted = False
+        elif self._gesture is not None and not event.buttons() & Qt.MouseButton.LeftButton:
+            self._cancel_gesture()  # the release went to another window
         elif self._gesture is not None:
-            self._gesture.move(at, bool(event.modifiers() & Qt.KeyboardModifier.AltModifier))
+            gesture, self._gesture = self._gesture, None  # its own edits do not end it
+            gesture.move(at, bool(event.modifiers() & Qt.KeyboardModifier.AltModifier))
+            self._gesture = gesture
         else:
             part = self.bench.part_under(at)
             self.store.hover(part.shown.placed.id if part is not None else None)
@@ -229,8 +249,7 @@ class BenchView(QGraphicsView):
         key = event.key()
         if key == Qt.Key.Key_Escape:
             if self._gesture is not None:
-                self._gesture.cancel()
-                self._gesture = None
+                self._cancel_gesture()
             else:
                 self.store.select(())
                 self.bench.select_join(None)
@@ -254,9 +273,9 @@ class BenchView(QGraphicsView):
     def dropEvent(self, event: QDropEvent) -> None:
         at = self.mapToScene(event.position().toPoint())
         if event.mimeData().hasFormat(PART_MIME):
-            key = bytes(event.mimeData().data(PART_MIME).data()).decode()
+            key = bytes(event.mimeData().data(PART_MIME).data()).decode(errors="replace")
             join: Join | None = self.bench.join_under(at)
             self.part_dropped.emit(key, at, join)
         else:
-            self.files_dropped.emit([u.toLocalFile() for u in event.mimeData().urls()], at)
+            self.files_dropped.emit([u.toLocalFile() for u in event.mimeData().urls() if u.isLocalFile()], at)
         event.acceptProposedAction()

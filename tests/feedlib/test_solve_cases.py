@@ -1,7 +1,6 @@
 """Special harnesses against closed forms: sections of special lengths, stubs, rings, shorts, odd sources, odd plans.
 
-Lossless lines here have velocity factor 1 and a length of 1 m; `at_quarters(n)` is the frequency at which that is n quarter
-waves.
+Lossless lines here have velocity factor 1 and a length of 1 m unless a test says otherwise.
 """
 
 import numpy as np
@@ -16,6 +15,7 @@ C_M_PER_S = 299_792_458.0
 
 
 def at_quarters(quarters: float) -> float:
+    """The frequency at which 1 m is so many quarter waves."""
     return quarters * C_M_PER_S / 4
 
 

@@ -1,4 +1,4 @@
-"""The largest and the smallest: kilometres of cable, a thousand antennas, ten thousand frequencies, and what is refused."""
+"""The largest and the smallest: kilometres of cable, a thousand antennas, ten thousand frequencies; what is refused."""
 
 import dataclasses
 
@@ -46,8 +46,8 @@ def test_three_kilometres_of_thin_coax_at_6_ghz():
     s[0, 0] = s[2, 2] = 1 / 5
     s[1, 1] = (tee - 50) / (tee + 50)
     np.testing.assert_allclose(answer.harness_s, np.broadcast_to(s, (5, 3, 3)), atol=1e-14)
-    for figure in (answer.antenna_current_a, answer.antenna_voltage_v, answer.reflected_share, answer.phase_balance_deg):
-        assert np.isfinite(figure).all()
+    assert np.isfinite(answer.antenna_current_a).all()
+    assert np.isfinite(answer.antenna_voltage_v).all()
     assert not np.isnan(answer.amplitude_balance_db).any()
     assert not np.isnan(answer.isolation_db).any()
 
@@ -66,6 +66,19 @@ def test_what_arrives_through_a_great_loss_keeps_its_digits(loss_db):
     np.testing.assert_allclose(answer.antenna_current_a[:, 1], current, rtol=1e-11)
     assert np.abs(answer.harness_s[0, 2, 0]) == pytest.approx(2 / 3 * 10 ** (-loss_db / 20), rel=1e-11)
     np.testing.assert_allclose(answer.isolation_db, loss_db - 20 * np.log10(2 / 3), rtol=1e-11)
+
+
+@pytest.mark.parametrize("loss_db", [200, 1500, 3150, 5000])
+def test_phases_behind_a_great_loss_keep_their_digits(loss_db):
+    """Two antennas behind one loss; the leg of one is an eighth of a wave longer, matched by the splitter."""
+    sketch = fed(Sketch(1e9), "AB")
+    sketch.add("pad", "P", loss_db=loss_db)
+    sketch.add("splitter", "W", form="wilkinson", centre_hz=1e9)
+    sketch.coax(C_M_PER_S / 1e9 / 8, 50, "longer")
+    sketch.join("radio:1", "P:1", "P:2", "W:1", "W:2", "A:1", "W:3", "longer:1", "longer:2", "B:1")
+    answer = solve(sketch.plan())
+    np.testing.assert_allclose(answer.phase_balance_deg, 45, rtol=1e-10)
+    np.testing.assert_allclose(answer.amplitude_balance_db, 0, atol=1e-10)
 
 
 def test_matched_loss_of_a_cable_is_its_figure():
@@ -252,12 +265,13 @@ def test_two_shorts_on_one_tee_are_refused():
 
 
 def test_a_millimetre_of_coax_makes_a_loop_determined():
-    """Between two tees, one join and 1 mm: the join shorts the section, so nothing is lost of a match."""
+    """Beside a join, both its ends are at one voltage: an admittance of 2 tanh(gamma l/2)/Z0."""
     sketch = loop_between_tees("join", "coax")
     next(p for p in sketch.parts if p["kind"] == "coax")["length_m"] = 0.001
     answer = solve(sketch.plan())
-    loop = 2j * 50 / np.tan(np.pi * 1e9 * 0.001 / C_M_PER_S) / -2  # both ends at one voltage
-    np.testing.assert_allclose(answer.port_impedance_ohm["radio:1"], 1 / (1 / 50 + 1 / loop), rtol=1e-9)
+    half_nepers = 0.001 / 2 * 10 * np.sqrt(1000) / 100 * np.log(10) / 20
+    loop_s = 2 * np.tanh(half_nepers + 1j * np.pi * 1e9 * 0.001 / C_M_PER_S) / 50
+    np.testing.assert_allclose(answer.port_impedance_ohm["radio:1"], 1 / (1 / 50 + loop_s), rtol=1e-9)
 
 
 def test_plans_that_cannot_be_solved_name_the_part():

@@ -213,6 +213,7 @@ def test_two_coaxes_side_by_side_are_one_of_half_their_impedance(plan, data):
 
 def test_random_plans_reach_what_they_are_for():
     """Hypothesis finds each case within its bounds; fails when a strategy no longer makes it."""
+
     def with_ring(plan: Plan) -> bool:
         reached = oracle.joins_from(plan, next(p.id for p in plan.parts if isinstance(p.part, Radio)))
         joins = [j for j in plan.joins if j[0].part in reached]

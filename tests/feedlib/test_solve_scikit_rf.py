@@ -107,9 +107,7 @@ class Twin:
         seen.renormalize(50)
         gamma = seen.s[:, 0, 0]
         radio = names[0]
-        np.testing.assert_allclose(
-            answer.port_impedance_ohm[f"{radio}:1"], 50 * (1 + gamma) / (1 - gamma), rtol=1e-9
-        )
+        np.testing.assert_allclose(answer.port_impedance_ohm[f"{radio}:1"], 50 * (1 + gamma) / (1 - gamma), rtol=1e-9)
         np.testing.assert_allclose(10 ** (-answer.return_loss_db / 20), np.abs(gamma), rtol=0, atol=1e-9)
 
 
@@ -282,5 +280,6 @@ def test_measured_parts_that_are_not_reciprocal():
         twin.tee(name)
     # The last one stands turned in a ring.
     twin.join("radio:1", "isolator:1", "isolator:2", "T1:1", "T2:1", "A:1", "circulator:3", "B:1")
-    twin.join("T1:2", "ferrite:2", "ferrite:1", "circulator:1", "circulator:2", "T2:2", "T1:3", "tie:1", "tie:2", "T2:3")
+    twin.join("T1:2", "ferrite:2", "ferrite:1", "circulator:1", "circulator:2", "T2:2")
+    twin.join("T1:3", "tie:1", "tie:2", "T2:3")
     twin.check()

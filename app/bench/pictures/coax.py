@@ -15,6 +15,7 @@ from feedlib.conventions import Array, guided_wavelength_m
 from feedlib.parts import Coax
 from feedlib.plan import Cable, Placed, Plan
 
+WIDEST = 360.0
 UNIT_HEIGHT = 19.0
 """Half-height of a matched section: |V| = the forward wave at its entry."""
 TALLEST = 2.4
@@ -33,13 +34,13 @@ def electrical_deg(part: Coax, cable: Cable | None, frequency_hz: float) -> floa
 
 
 def drawn_width(degrees: float) -> float:
-    """Bench units for an electrical length: about straight at first, then softly flattening, 360 at most."""
-    return min(360.0, 44 + 78 * math.log2(1 + degrees / 45))
+    """Bench units for an electrical length: about straight at first, then softly flattening, WIDEST at most."""
+    return min(WIDEST, 44 + 78 * math.log2(1 + degrees / 45))
 
 
 def degrees_of_width(width: float) -> float:
     """The electrical length that is drawn so wide."""
-    return float(max(0.0, 45 * (2 ** ((min(width, 360.0) - 44) / 78) - 1)))
+    return float(max(0.0, 45 * (2 ** ((min(width, WIDEST) - 44) / 78) - 1)))
 
 
 class CoaxPicture(Picture):
