@@ -14,18 +14,15 @@ def smallest_arc_deg(current: ComplexArray, wanted_deg: Array) -> Array:
     """
     if current.shape[-2] < 2:
         return np.zeros((*current.shape[:-2], current.shape[-1]))
-    against = current[..., :1, :].conj()
-    angle = np.degrees(np.angle(current * against)) - (wanted_deg - wanted_deg[:1])
-    if wanted_deg.any():
-        angle = np.mod(angle + 180, 360) - 180
+    error = np.degrees(np.angle(current)) - wanted_deg
+    angle = error - error[..., :1, :]
+    angle -= 360 * np.rint(angle / 360)
     arc: Array = angle.max(axis=-2) - angle.min(axis=-2)
     wide = arc > 180
     if not current.all():
         wide |= (current == 0).any(axis=-2)
     if wide.any():
-        arc[wide] = _arc_by_gaps_deg(
-            np.where(current == 0, np.nan, np.degrees(np.angle(current)) - wanted_deg)[..., wide]
-        )
+        arc[wide] = _arc_by_gaps_deg(np.where(current == 0, np.nan, error)[..., wide])
     return arc
 
 

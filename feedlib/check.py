@@ -8,6 +8,7 @@ from dataclasses import dataclass
 from feedlib.answer import JUDGED
 from feedlib.errors import SolveError
 from feedlib.graph import joins_away
+from feedlib.matched import broken_sets
 from feedlib.parts import Antenna, Coax, Radio
 from feedlib.plan import Limits, Plan
 from feedlib.schema import specs
@@ -37,6 +38,7 @@ def check(plan: Plan) -> tuple[Problem, ...]:
         *_loops(plan),
         *_open_ports(plan),
         *_reach(plan),
+        *_matched_sets(plan),
         *_limits(plan),
     ]
     return tuple(sorted(found, key=lambda p: not p.stops))
@@ -103,6 +105,12 @@ def _reach(plan: Plan) -> Iterator[Problem]:
     for p in plan.parts:
         if isinstance(p.part, Antenna) and p.id not in away and p.id in joined:
             yield Problem(p.id, "The radio does not reach it.", "Join its branch to the harness.")
+
+
+def _matched_sets(plan: Plan) -> Iterator[Problem]:
+    for broken in broken_sets(plan):
+        advice = "Change one of its sections, which the others follow, or take one out of the set."
+        yield Problem(broken.part_id, broken.text, advice)
 
 
 def _limits(plan: Plan) -> Iterator[Problem]:

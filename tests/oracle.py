@@ -44,6 +44,7 @@ class System:
             m[rows, rows] = b / UNIT_OHM
             c[rows] = right
         norms = np.linalg.norm(m, axis=1)
+        norms[norms == 0] = 1  # an equation that says nothing: the matrix is singular, and stays so
         return m / norms[:, None], c / norms, norms
 
     def port_current(self, x: np.ndarray, port: Port) -> complex:

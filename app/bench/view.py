@@ -161,9 +161,9 @@ class BenchView(QGraphicsView):
             self.bench.select_join(join)
             return
         keep = self.store.selected if more else ()
+        self._gesture = BoxSelect(self.bench, at, keep)  # before what was selected is let go
         self.store.select(keep)
         self.bench.select_join(None)
-        self._gesture = BoxSelect(self.bench, at, keep)
 
     @staticmethod
     def _on_swell_end(part: PartItem, at: QPointF) -> bool:

@@ -8,6 +8,7 @@ from dataclasses import replace
 from types import MappingProxyType
 from typing import Any
 
+from feedlib.matched import matched_sets
 from feedlib.parts import Coax, Part, Radio, Splitter, Tee
 from feedlib.plan import Band, Cable, Join, Limits, Placed, Plan, Port, check_id
 
@@ -23,8 +24,11 @@ def changed_part(plan: Plan, part_id: str, **fields: Any) -> Plan:
 
 
 def turned_length(plan: Plan, part_ids: Iterable[str], by_m: float) -> Plan:
-    """Coax sections longer by so many metres (never below zero)."""
+    """Coax sections longer by so many metres (never below zero), each once, and with them their matched sets."""
     wanted = set(part_ids)
+    for members in matched_sets(plan).values():
+        if not wanted.isdisjoint(members):
+            wanted.update(members)
     parts = tuple(
         replace(p, part=replace(p.part, length_m=max(0.0, round(p.part.length_m + by_m, 9))))
         if p.id in wanted and isinstance(p.part, Coax)

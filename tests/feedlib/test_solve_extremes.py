@@ -221,59 +221,6 @@ def refused(sketch: Sketch) -> SolveError:
     return caught.value
 
 
-def loop_between_tees(*sections: str) -> Sketch:
-    """Two tees tied by two sections: each "join", "coax", "pad" or "series"; all without length, loss or impedance."""
-    sketch = fed(Sketch(1e9), "A")
-    for name in ("T1", "T2"):
-        sketch.add("tee", name)
-    sketch.join("radio:1", "T1:1", "T2:1", "A:1")
-    for arm, section in enumerate(sections, 2):
-        name = f"{section} {arm}"
-        if section == "join":
-            sketch.join(f"T1:{arm}", f"T2:{arm}")
-            continue
-        if section == "coax":
-            sketch.coax(0, 50, name, skin_db_per_100m=10)
-        elif section == "pad":
-            sketch.add("pad", name, loss_db=0)
-        else:
-            sketch.add("lumped", name, place="series", r_ohm=0)
-        sketch.join(f"T1:{arm}", f"{name}:2", f"{name}:1", f"T2:{arm}")
-    return sketch
-
-
-@pytest.mark.parametrize("sections", [("join", "join"), ("coax", "coax"), ("coax", "join"), ("pad", "series")])
-def test_loop_without_length_is_refused_with_a_part_in_it(sections):
-    in_loop = {"T1", "T2", *(f"{s} {n}" for n, s in enumerate(sections, 2))}
-    assert refused(loop_between_tees(*sections)).part in in_loop
-
-
-def test_tee_tied_to_itself_is_refused():
-    sketch = fed(Sketch(1e9), "A")
-    sketch.add("tee", "T", ports=4)
-    sketch.join("radio:1", "T:1", "T:2", "T:4", "T:3", "A:1")
-    assert refused(sketch).part == "T"
-
-
-def test_two_shorts_on_one_tee_are_refused():
-    sketch = fed(Sketch(1e9))
-    sketch.add("tee", "T")
-    for name in ("X", "Y"):
-        sketch.add("load", name, impedance_ohm=0j)
-    sketch.join("radio:1", "T:1", "T:2", "X:1", "T:3", "Y:1")
-    assert refused(sketch).part in {"T", "X", "Y"}
-
-
-def test_a_millimetre_of_coax_makes_a_loop_determined():
-    """Beside a join, both its ends are at one voltage: an admittance of 2 tanh(gamma l/2)/Z0."""
-    sketch = loop_between_tees("join", "coax")
-    next(p for p in sketch.parts if p["kind"] == "coax")["length_m"] = 0.001
-    answer = solve(sketch.plan())
-    half_nepers = 0.001 / 2 * 10 * np.sqrt(1000) / 100 * np.log(10) / 20
-    loop_s = 2 * np.tanh(half_nepers + 1j * np.pi * 1e9 * 0.001 / C_M_PER_S) / 50
-    np.testing.assert_allclose(answer.port_impedance_ohm["radio:1"], 1 / (1 / 50 + loop_s), rtol=1e-9)
-
-
 def test_plans_that_cannot_be_solved_name_the_part():
     sketch = Sketch(1e9)
     sketch.antenna(50, "A")
