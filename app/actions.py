@@ -4,15 +4,31 @@ from __future__ import annotations
 
 from collections.abc import Callable
 from dataclasses import dataclass
-from typing import TYPE_CHECKING
+from typing import Protocol
 
 from PySide6.QtGui import QAction, QKeySequence
-from PySide6.QtWidgets import QMenu, QMenuBar
+from PySide6.QtWidgets import QMenu, QMenuBar, QWidget
 
-if TYPE_CHECKING:
-    from app.window import Window
+from app.bench.view import BenchView
+from app.files import Files
+from app.store import Store
 
 Key = QKeySequence.StandardKey | str | None
+
+
+class Acting(Protocol):
+    """What an action may act on: the window."""
+
+    @property
+    def store(self) -> Store: ...
+    @property
+    def files(self) -> Files: ...
+    @property
+    def bench(self) -> BenchView: ...
+    def delete(self) -> None: ...
+    def select_all(self) -> None: ...
+    def choose_theme(self, theme: str) -> None: ...
+    def close(self) -> bool: ...
 
 
 @dataclass(frozen=True, slots=True)
@@ -23,7 +39,7 @@ class ActionRecord:
     menu: str
     text: str
     keys: Key
-    run: Callable[[Window], object]
+    run: Callable[[Acting], object]
     tip: str = ""
 
 
@@ -37,7 +53,7 @@ ACTIONS: tuple[ActionRecord, ...] = (
     ActionRecord("save", "File", "&Save", STANDARD.Save, lambda w: w.files.save(), "Save the plan"),
     ActionRecord("save_as", "File", "Save &as…", STANDARD.SaveAs, lambda w: w.files.save_as(), "Save under a new name"),
     ActionRecord(RULE, "File", "", None, lambda w: None),
-    ActionRecord("quit", "File", "&Quit", STANDARD.Quit, lambda w: w.close_asking(), "Close the window"),
+    ActionRecord("quit", "File", "&Quit", STANDARD.Quit, lambda w: w.close(), "Close the window"),
     ActionRecord("undo", "Edit", "&Undo", STANDARD.Undo, lambda w: w.store.stack.undo(), "Take the last act back"),
     ActionRecord("redo", "Edit", "&Redo", STANDARD.Redo, lambda w: w.store.stack.redo(), "Do it again"),
     ActionRecord(RULE, "Edit", "", None, lambda w: None),
@@ -61,7 +77,7 @@ ACTIONS: tuple[ActionRecord, ...] = (
 )
 
 
-def build_menus(window: Window, bar: QMenuBar) -> tuple[dict[str, QAction], dict[str, QMenu]]:
+def build_menus(window: QWidget, acting: Acting, bar: QMenuBar) -> tuple[dict[str, QAction], dict[str, QMenu]]:
     """Fill the menu bar from the table; returns the actions by id and the menus by name."""
     menus: dict[str, QMenu] = {}
     actions: dict[str, QAction] = {}
@@ -76,14 +92,14 @@ def build_menus(window: Window, bar: QMenuBar) -> tuple[dict[str, QAction], dict
                 record.keys, QKeySequence.StandardKey
             ) else action.setShortcut(QKeySequence(record.keys))
         action.setStatusTip(record.tip)
-        action.triggered.connect(_runner(record, window))
+        action.triggered.connect(_runner(record, acting))
         menu.addAction(action)
         actions[record.id] = action
     return actions, menus
 
 
-def _runner(record: ActionRecord, window: Window) -> Callable[[], object]:
-    return lambda: record.run(window)
+def _runner(record: ActionRecord, acting: Acting) -> Callable[[], object]:
+    return lambda: record.run(acting)
 
 
 def _menu(bar: QMenuBar, menus: dict[str, QMenu], name: str) -> QMenu:

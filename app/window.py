@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from pathlib import Path
-from typing import TYPE_CHECKING, Literal
+from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QByteArray, QPoint, QPointF, QSettings, Qt
 from PySide6.QtGui import QCloseEvent, QColor, QGuiApplication, QPalette
@@ -40,7 +40,6 @@ from feedlib.plan import Join, Port
 if TYPE_CHECKING:
     from app.plots.row import PlotRow
 
-Theme = Literal["system", "light", "dark"]
 MOST_LETTERS = 80
 
 
@@ -65,7 +64,7 @@ class Window(QMainWindow):
         self.title, self.band, self.hint = QLabel(), QLabel(), QLabel(self.bench)
         self._split = QSplitter(Qt.Orientation.Vertical)
         self._lay_out()
-        self.actions_by_id, self.menus = build_menus(self, self.menuBar())
+        self.actions_by_id, self.menus = build_menus(self, self, self.menuBar())
         self._build_examples()
         self._connect()
         self.set_look(self.look)
@@ -151,13 +150,13 @@ class Window(QMainWindow):
         store.file_changed.connect(self._tell_file)
         store.plan_changed.connect(self._tell_plan)
         store.stack.cleanChanged.connect(self._tell_file)
-        for which, name in (("undo", "Undo"), ("redo", "Redo")):
-            action = self.actions_by_id[which]
-            can = store.stack.canUndoChanged if which == "undo" else store.stack.canRedoChanged
-            words = store.stack.undoTextChanged if which == "undo" else store.stack.redoTextChanged
+        undo, redo = self.actions_by_id["undo"], self.actions_by_id["redo"]
+        for action, can in ((undo, store.stack.canUndoChanged), (redo, store.stack.canRedoChanged)):
             can.connect(action.setEnabled)
-            words.connect(lambda text, a=action, n=name: a.setText(button_text(f"{n} {shortened(text)}".rstrip())))
             action.setEnabled(False)
+        # Bound methods end with the window; the stack speaks once more when it goes, after the actions.
+        store.stack.undoTextChanged.connect(self._tell_undo)
+        store.stack.redoTextChanged.connect(self._tell_redo)
         self.drawer.asked.connect(lambda key: self.placing.put_behind(key, self._middle()))
         self.drawer.file_asked.connect(lambda: self._measured(self._middle()))
         self.bench.part_dropped.connect(self._dropped)
@@ -174,7 +173,7 @@ class Window(QMainWindow):
         """Select every part."""
         self.store.select(tuple(p.id for p in self.store.plan.parts))
 
-    def choose_theme(self, theme: Theme) -> None:
+    def choose_theme(self, theme: str) -> None:
         """Light, dark, or as the system has it; remembered."""
         if self._settings is not None:
             self._settings.setValue("window/theme", theme)
@@ -197,10 +196,6 @@ class Window(QMainWindow):
         for view in (self.bench, self.drawer, self.rail, self.strip, self.sheet, self.plots):
             if view is not None:
                 view.set_look(look)
-
-    def close_asking(self) -> None:
-        """Close the window; asks when there is something to lose."""
-        self.close()
 
     def close_without_asking(self) -> None:
         """Close the window and lose what is not saved."""
@@ -251,6 +246,12 @@ class Window(QMainWindow):
         shown = f"{shortened(name)}{file}".replace("[*]", "[*][*]")  # only the last one is Qt's mark of change
         self.setWindowTitle(f"{shown}[*] – Feedwright")
         self.title.setText(f"{name}   ·   edited" if self.files.unsaved else name)
+
+    def _tell_undo(self, text: str) -> None:
+        self.actions_by_id["undo"].setText(button_text(f"Undo {shortened(text)}".rstrip()))
+
+    def _tell_redo(self, text: str) -> None:
+        self.actions_by_id["redo"].setText(button_text(f"Redo {shortened(text)}".rstrip()))
 
     def _tell_plan(self) -> None:
         plan = self.store.plan

@@ -109,7 +109,7 @@ def _reach(plan: Plan) -> Iterator[Problem]:
 
 def _matched_sets(plan: Plan) -> Iterator[Problem]:
     for broken in broken_sets(plan):
-        advice = "Change one of its sections, which the others follow, or take one out of the set."
+        advice = "Give all its sections one cable, length and ends, or take the odd ones out of the set."
         yield Problem(broken.part_id, broken.text, advice)
 
 

@@ -295,7 +295,7 @@ def test_a_part_with_one_port_dropped_on_a_join_stands_beside_it(whole: tuple[Wi
 
 
 def test_a_pulled_join_is_offered_parts_at_the_pointer(whole: tuple[Window, Hands]) -> None:
-    window, hands = whole
+    _, hands = whole
     seen: list[str] = []
 
     def choose() -> None:
