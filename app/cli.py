@@ -14,13 +14,15 @@ from typing import Any, NoReturn
 
 import numpy as np
 
-from feedlib import Answer, FeedError, Figures, SolveError, check, read_plan, solve
+from app.editing.edits import plain_text
+from feedlib import Answer, FeedError, Figures, Plan, PlanError, SolveError, check, read_plan, solve
+from feedlib.answer import JUDGED
+from feedlib.errors import quoted
 from feedlib.plan_file import write_atomically
 from feedlib.schema import specs
 from feedlib.touchstone_write import write_touchstone
 
 VERBS = ("solve", "picture")
-UNITS = {"return_loss_db": "dB", "amplitude_balance_db": "dB", "phase_balance_deg": "°", "harness_loss_db": "dB"}
 
 
 class Refused(Exception):
@@ -28,6 +30,9 @@ class Refused(Exception):
 
 
 class _Parser(argparse.ArgumentParser):
+    def __init__(self, **words: Any) -> None:
+        super().__init__(**words, allow_abbrev=False)  # an option's short form would have to stay for ever
+
     def error(self, message: str) -> NoReturn:
         raise Refused(message)
 
@@ -35,6 +40,8 @@ class _Parser(argparse.ArgumentParser):
 def main(arguments: Sequence[str] | None = None) -> int:
     """Run one command; returns the exit code."""
     words = list(sys.argv[1:] if arguments is None else arguments)
+    if isinstance(sys.stdout, io.TextIOWrapper):
+        sys.stdout.reconfigure(errors="replace")  # a title may hold any letter, a terminal may not
     try:
         if words and words[0] in VERBS:
             return _solve(words[1:]) if words[0] == "solve" else _picture(words[1:])
@@ -43,7 +50,7 @@ def main(arguments: Sequence[str] | None = None) -> int:
         sentence = str(error)
     except OSError as error:
         sentence = f"{error.filename or 'the file'}: {error.strerror or error}"
-    print("feedwright: " + " ".join(sentence.split()), file=sys.stderr)
+    print("feedwright: " + plain_text(" ".join(sentence.split())), file=sys.stderr)
     return 2
 
 
@@ -55,24 +62,40 @@ def _solve(words: Sequence[str]) -> int:
     parser.add_argument("--touchstone", metavar="FILE", help="the harness S-parameters")
     parser.add_argument("--csv", metavar="FILE", help="the figures over frequency as a table")
     options = parser.parse_args(words)
-    plan = read_plan(options.plan)
+    plan = _read(options.plan)
     try:
         answer = solve(plan)
     except SolveError as error:
-        stops = [p for p in check(plan) if p.stops and p.part_id == error.part]
-        advice = f" {stops[0].advice}" if stops else ""
-        raise Refused(f"{options.plan}: {error}.{advice}") from None
-    if options.json:
-        text = json.dumps(answer_json(answer, with_s=options.with_s), indent=1)
-        write_atomically(options.json, (text + "\n").encode())
-    if options.touchstone:
-        write_atomically(options.touchstone, _touchstone(answer).encode())
-    if options.csv:
-        _write_csv(answer, options.csv)
+        raise Refused(f"{_shown(options.plan)}: {error}") from None
+    if options.json is not None:
+        _write(options.json, json.dumps(answer_json(answer, with_s=options.with_s), indent=1) + "\n")
+    if options.touchstone is not None:
+        _write(options.touchstone, _touchstone(answer))
+    if options.csv is not None:
+        _write(options.csv, _csv(answer))
     print(_summary(answer))
     for problem in check(plan):
         print(f"note: {problem.part_id or 'plan'}: {problem.text}")
     return 0 if answer.holds else 1
+
+
+def _read(path: str) -> Plan:
+    try:
+        return read_plan(path)
+    except PlanError as error:
+        sentence = str(error)
+        raise Refused(sentence if repr(path) in sentence else f"{_shown(path)}: {sentence}") from None
+
+
+def _write(path: str, content: str | bytes) -> None:
+    try:
+        write_atomically(path, content.encode() if isinstance(content, str) else content)
+    except OSError as error:
+        raise Refused(f"{_shown(path)} cannot be written: {error.strerror or error}") from None
+
+
+def _shown(path: str) -> str:
+    return quoted(path, 4096)
 
 
 def _summary(answer: Answer) -> str:
@@ -81,10 +104,9 @@ def _summary(answer: Answer) -> str:
     names = specs(type(plan.limits))
     lines = [f"{plan.title or 'untitled'}: {len(plan.parts)} parts, {len(answer.antenna_ids)} antennas, {band}"]
     for v in answer.verdicts:
-        sign = ">=" if v.limit in ("return_loss_db", "isolation_db") else "<="
-        unit = UNITS.get(v.limit, "dB")
+        spec, sign = names[v.limit], ">=" if JUDGED[v.limit] else "<="
         lines.append(
-            f"{'holds' if v.holds else 'FAILS'}  {names[v.limit].label.lower():18s} {v.worst:8.3f} {unit}"
+            f"{'holds' if v.holds else 'FAILS'}  {spec.label.lower():18s} {v.worst:8.3f} {spec.unit}"
             f" at {v.frequency_hz / 1e6:.6g} MHz (wants {sign} {v.wanted:g})"
         )
     lines.append(f"at {plan.band.marked_hz / 1e6:.6g} MHz: return loss {mark.return_loss_db[0]:.2f} dB")
@@ -93,7 +115,7 @@ def _summary(answer: Answer) -> str:
         phase = math.degrees(math.atan2(current.imag, current.real))
         share = 100 * float(mark.antenna_share[0, n])
         lines.append(f"  {name}: {share:.2f} % of the power, {abs(current):.4g} A at {phase:+.2f} deg")
-    return "\n".join(" ".join(line.split("\n")) for line in lines)
+    return "\n".join(map(plain_text, lines))
 
 
 FIGURES = (
@@ -151,7 +173,7 @@ def _touchstone(answer: Answer) -> str:
     return write_touchstone(answer.frequency_hz, answer.harness_s, answer.plan.reference_ohm, comments)
 
 
-def _write_csv(answer: Answer, path: str) -> None:
+def _csv(answer: Answer) -> str:
     names = ["return_loss_db", "reflected_share", "amplitude_balance_db", "phase_balance_deg", "harness_loss_db"]
     columns: dict[str, Any] = {"frequency_hz": answer.frequency_hz} | {n: getattr(answer, n) for n in names}
     for n, antenna in enumerate(answer.antenna_ids):
@@ -163,7 +185,7 @@ def _write_csv(answer: Answer, path: str) -> None:
     table = csv.writer(text)
     table.writerow(columns)
     table.writerows(zip(*(c.tolist() for c in columns.values()), strict=True))
-    write_atomically(path, text.getvalue().encode())
+    return text.getvalue()
 
 
 def _picture(words: Sequence[str]) -> int:
@@ -173,7 +195,7 @@ def _picture(words: Sequence[str]) -> int:
     parser.add_argument("--size", metavar="WxH", default="1600x1000", type=_size)
     parser.add_argument("--dark", action="store_true")
     options = parser.parse_args(words)
-    plan = read_plan(options.plan)
+    plan = _read(options.plan)
     from app.screen import why_no_qt
 
     reason = why_no_qt()
@@ -181,7 +203,7 @@ def _picture(words: Sequence[str]) -> int:
         raise Refused(reason)
     from app.run import draw_picture
 
-    draw_picture(plan, Path(options.plan), Path(options.out), options.size, dark=options.dark)
+    _write(options.out, draw_picture(plan, Path(options.plan), options.size, dark=options.dark))
     return 0
 
 
@@ -190,8 +212,8 @@ def _size(text: str) -> tuple[int, int]:
     if not (width.isascii() and width.isdigit() and height.isascii() and height.isdigit()):
         raise argparse.ArgumentTypeError(f"wants a size like 1600x1000, got {text!r}")
     size = int(width[:6]), int(height[:6])
-    if not (400 <= size[0] <= 8000 and 300 <= size[1] <= 8000):
-        raise argparse.ArgumentTypeError(f"wants 400x300 to 8000x8000, got {text!r}")
+    if not (900 <= size[0] <= 8000 and 600 <= size[1] <= 8000):
+        raise argparse.ArgumentTypeError(f"wants 900x600 (the least window) to 8000x8000, got {text!r}")
     return size
 
 
@@ -203,8 +225,8 @@ def _window(words: Sequence[str]) -> int:
     )
     parser.add_argument("plan", metavar="PLAN", nargs="?")
     options = parser.parse_args(words)
-    path = Path(options.plan) if options.plan else None
-    plan = read_plan(path) if path is not None else None
+    path = Path(options.plan) if options.plan is not None else None
+    plan = _read(options.plan) if options.plan is not None else None
     from app.screen import why_no_window
 
     reason = why_no_window()

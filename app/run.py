@@ -14,7 +14,6 @@ from app.look import DARK, LIGHT
 from app.reporting import catch_bugs
 from feedlib import Plan
 from feedlib.assets_place import ASSETS
-from feedlib.plan_file import write_atomically
 
 
 def make_application() -> QApplication:
@@ -53,8 +52,8 @@ def run_window(plan: Plan | None, path: Path | None) -> int:
     return application.exec()
 
 
-def draw_picture(plan: Plan, path: Path, out: Path, size: tuple[int, int], *, dark: bool) -> None:
-    """Write a picture of the window to `out`; OSError when it cannot be written."""
+def draw_picture(plan: Plan, path: Path, size: tuple[int, int], *, dark: bool) -> bytes:
+    """A picture of the window, as the bytes of a PNG file."""
     os.environ["QT_QPA_PLATFORM"] = "offscreen"
     application = make_application()
     from app.window import Window
@@ -70,4 +69,5 @@ def draw_picture(plan: Plan, path: Path, out: Path, size: tuple[int, int], *, da
     buffer = QBuffer()
     QImageWriter(buffer, b"PNG").write(window.grab().toImage())
     window.close_without_asking()
-    write_atomically(out, bytes(buffer.data().data()))
+    window.deleteLater()
+    return bytes(buffer.data().data())

@@ -2,9 +2,11 @@
 
 from __future__ import annotations
 
+import contextlib
 import ctypes
 import importlib.util
 import os
+import socket
 import sys
 from pathlib import Path
 
@@ -19,15 +21,19 @@ def why_no_window() -> str | None:
     """The sentence that says why no window can be opened, and what to do; None when all is well."""
     if not sys.platform.startswith("linux"):
         return why_no_qt()
-    named = os.environ.get("QT_QPA_PLATFORM", "")
-    if named and not named.startswith("xcb"):
+    named = os.environ.get("QT_QPA_PLATFORM", "").partition(";")[0].partition(":")[0]
+    if named and not _plugin(named).exists():
+        return why_no_qt() or f"QT_QPA_PLATFORM asks for {named!r}, which Qt does not have; {WITHOUT}"
+    if named not in ("", "xcb", "wayland"):
         return why_no_qt()
-    if not os.environ.get("DISPLAY") and not os.environ.get("WAYLAND_DISPLAY"):
+    reasons = []
+    if named != "xcb" and os.environ.get("WAYLAND_DISPLAY"):
+        reasons.append(_why_no_wayland(os.environ["WAYLAND_DISPLAY"]))
+    if named != "wayland" and os.environ.get("DISPLAY"):
+        reasons.append(_why_no_xcb(os.environ["DISPLAY"]))
+    if not reasons:
         return f"there is no screen (neither DISPLAY nor WAYLAND_DISPLAY is set); {WITHOUT}"
-    reason = why_no_qt()
-    if reason or not os.environ.get("DISPLAY"):
-        return reason
-    return _why_no_xcb()
+    return why_no_qt() if None in reasons else reasons[0]
 
 
 def why_no_qt() -> str | None:
@@ -39,14 +45,26 @@ def why_no_qt() -> str | None:
     return None
 
 
-def _why_no_xcb() -> str | None:
+def _plugin(platform: str) -> Path:
     spec = importlib.util.find_spec("PySide6")
-    if spec is None or spec.origin is None:
-        return None
-    plugin = Path(spec.origin).parent / "Qt" / "plugins" / "platforms" / "libqxcb.so"
+    folder = Path(spec.origin).parent if spec is not None and spec.origin is not None else Path()
+    return folder / "Qt" / "plugins" / "platforms" / f"libq{platform}.so"
+
+
+def _why_no_wayland(display: str) -> str | None:
+    place = Path(os.environ.get("XDG_RUNTIME_DIR", ""), display)
+    with contextlib.closing(socket.socket(socket.AF_UNIX)) as screen:
+        try:
+            screen.connect(str(place))
+        except OSError as error:
+            return f"the screen {display!r} cannot be reached ({error.strerror or error}); {WITHOUT}"
+    return None
+
+
+def _why_no_xcb(display: str) -> str | None:
     try:
-        if plugin.exists():
-            ctypes.CDLL(str(plugin))
+        if _plugin("xcb").exists():
+            ctypes.CDLL(str(_plugin("xcb")))
         xcb = ctypes.CDLL("libxcb.so.1")
     except OSError as error:
         return f"Qt cannot use this screen ({error}); install, on Debian: apt install {PACKAGES}; {WITHOUT}"
@@ -54,6 +72,4 @@ def _why_no_xcb() -> str | None:
     connection = ctypes.c_void_p(xcb.xcb_connect(None, None))
     failed = xcb.xcb_connection_has_error(connection)
     xcb.xcb_disconnect(connection)
-    if failed:
-        return f"the screen {os.environ['DISPLAY']!r} cannot be reached; {WITHOUT}"
-    return None
+    return f"the screen {display!r} cannot be reached; {WITHOUT}" if failed else None

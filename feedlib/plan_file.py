@@ -197,7 +197,13 @@ def write_plan(plan: Plan, path: str | os.PathLike[str]) -> None:
 
 
 def write_atomically(path: str | os.PathLike[str], data: bytes) -> None:
-    """Put `data` at `path` in one step (OSError when that fails; the old file is then untouched)."""
+    """Put `data` at `path` in one step (OSError when that fails; the old file is then untouched).
+
+    A pipe or a device is written to as it is; it must not be replaced by a file.
+    """
+    if os.path.exists(path) and not os.path.isfile(path):
+        Path(path).write_bytes(data)
+        return
     target = Path(os.path.realpath(path))
     handle, name = tempfile.mkstemp(prefix=".saving-", suffix=".part", dir=target.parent)
     try:

@@ -35,8 +35,9 @@ def own_settings(request: pytest.FixtureRequest, tmp_path_factory: pytest.TempPa
     if request.path.is_relative_to(APP_TESTS):
         folder = str(tmp_path_factory.mktemp("settings"))
         QSettings.setDefaultFormat(QSettings.Format.IniFormat)
-        for scope in (QSettings.Scope.UserScope, QSettings.Scope.SystemScope):
-            QSettings.setPath(QSettings.Format.IniFormat, scope, folder)
+        for kind in (QSettings.Format.IniFormat, QSettings.Format.NativeFormat):
+            for scope in (QSettings.Scope.UserScope, QSettings.Scope.SystemScope):
+                QSettings.setPath(kind, scope, folder)
 
 
 @pytest.fixture(autouse=True)

@@ -2,11 +2,14 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable, Iterator
+from contextlib import contextmanager
+
 import numpy as np
 from PySide6.QtCore import QEvent, QEventLoop, QMimeData, QPoint, QPointF, Qt, QTimer
 from PySide6.QtGui import QDragEnterEvent, QDragMoveEvent, QDropEvent, QMouseEvent, QWheelEvent
 from PySide6.QtTest import QTest
-from PySide6.QtWidgets import QApplication
+from PySide6.QtWidgets import QApplication, QWidget
 
 from app.bench.view import BenchView
 from app.store import Store
@@ -70,6 +73,26 @@ def same_answer(store: Store) -> None:
         assert np.array_equal(getattr(store.answer, figure), getattr(fresh, figure), equal_nan=True)
     assert store.answer.mark.frequency_hz == fresh.mark.frequency_hz
     assert repr(store.answer.verdicts) == repr(fresh.verdicts)  # nan is not equal to itself
+
+
+@contextmanager
+def answering(act: Callable[[QWidget], None]) -> Iterator[None]:
+    """Do something with the menu or the dialog that comes up meanwhile, as soon as it is there; one has to come."""
+    timer = QTimer()
+
+    def look() -> None:
+        asked = QApplication.activePopupWidget() or QApplication.activeModalWidget()
+        if asked is not None:
+            timer.stop()
+            act(asked)
+
+    timer.timeout.connect(look)
+    timer.start(0)
+    try:
+        yield
+        assert not timer.isActive(), "nothing was asked"
+    finally:
+        timer.stop()
 
 
 class Hands:

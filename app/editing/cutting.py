@@ -8,8 +8,8 @@ from __future__ import annotations
 
 from collections.abc import Callable
 from dataclasses import replace
-from fractions import Fraction
 
+from app.editing.edits import marked
 from app.editing.matched import with_coax
 from feedlib.conventions import SPEED_OF_LIGHT_M_PER_S, guided_wavelength_m
 from feedlib.errors import PlanError, quoted
@@ -57,38 +57,35 @@ def moved_to_frequency(plan: Plan, new_mark_hz: float) -> tuple[Plan, tuple[str,
     splitters and resonances keep their place in the band, lumped L and C their reactance. A cable's loss is what it
     has at the new frequency. Measured data cannot move: such parts stay as they are and are named.
     """
-    ratio = Fraction(new_mark_hz) / Fraction(plan.band.marked_hz)
+    old_hz = plan.band.marked_hz
+    new_hz = marked(plan, new_mark_hz).band.marked_hz  # refuses what no mark can be
 
     def moved_hz(frequency_hz: float) -> float:
-        # Rounded once, from the exact product: the mark lands on its figure, and the sweep goes on holding the band.
-        return float(Fraction(frequency_hz) * ratio)
+        # Divided first, so that what stands on the mark stays on it, and never out of order.
+        return frequency_hz / old_hz * new_hz
 
     band, sweep = plan.band, plan.sweep
-    new_band = replace(
-        band, start_hz=moved_hz(band.start_hz), stop_hz=moved_hz(band.stop_hz), mark_hz=moved_hz(band.marked_hz)
-    )
     if sweep is not None:
         sweep = replace(sweep, start_hz=moved_hz(sweep.start_hz), stop_hz=moved_hz(sweep.stop_hz))
-    shrink = plan.band.marked_hz / new_mark_hz
     moved = replace(
         plan,
-        band=new_band,
+        band=replace(band, start_hz=moved_hz(band.start_hz), stop_hz=moved_hz(band.stop_hz), mark_hz=new_hz),
         sweep=sweep,
         channels=tuple(replace(c, hz=moved_hz(c.hz)) for c in plan.channels),
-        parts=tuple(replace(p, part=_moved(p.part, moved_hz, shrink)) for p in plan.parts),
+        parts=tuple(replace(p, part=_moved(p.part, moved_hz, old_hz / new_hz)) for p in plan.parts),
     )
     return moved, tuple(p.id for p in plan.parts if _is_measured(p.part))
 
 
-def _moved(part: Part, moved_hz: Callable[[float], float], shrink: float) -> Part:
-    """A part for another frequency; lengths, inductances and capacitances grow by `shrink`."""
+def _moved(part: Part, moved_hz: Callable[[float], float], longer: float) -> Part:
+    """A part for another frequency; lengths, inductances and capacitances are multiplied by `longer`."""
     if isinstance(part, Coax):
-        first, last = (end and replace(end, length_m=end.length_m * shrink) for end in part.ends)
-        return replace(part, length_m=part.length_m * shrink, ends=(first, last))
+        first, last = (end and replace(end, length_m=end.length_m * longer) for end in part.ends)
+        return replace(part, length_m=part.length_m * longer, ends=(first, last))
     if isinstance(part, Splitter) and part.centre_hz is not None:
         return replace(part, centre_hz=moved_hz(part.centre_hz))
     if isinstance(part, Lumped):
-        l_h, c_f = (None if value is None else value * shrink for value in (part.l_h, part.c_f))
+        l_h, c_f = (None if value is None else value * longer for value in (part.l_h, part.c_f))
         return replace(part, l_h=l_h, c_f=c_f)
     if isinstance(part, Antenna) and part.impedance.resonant is not None:
         resonant: Resonant = replace(part.impedance.resonant, f0_hz=moved_hz(part.impedance.resonant.f0_hz))

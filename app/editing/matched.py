@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Collection, Mapping
+from collections.abc import Collection
 from dataclasses import replace
 from itertools import count
 from typing import Any
@@ -33,19 +33,19 @@ def matched(plan: Plan, part_ids: Collection[str]) -> Plan:
     first = plan.placed(chosen[0]).part
     name = _set_name(first) or free_set_name(plan)
     shared = {field: getattr(first, field) for field in SHARED}
-    return _without_single_members(_changed(plan, dict.fromkeys(members, {**shared, "matched_set": name})))
+    return _without_lone(_changed(plan, members, **shared, matched_set=name), _sets(plan, chosen))
 
 
 def unmatched(plan: Plan, part_ids: Collection[str]) -> Plan:
     """Sections out of their matched sets, as long as before; a set that is left with one member dissolves."""
-    leaving = {i for i in part_ids if _set_name(plan.placed(i).part) is not None}
-    return _without_single_members(_changed(plan, dict.fromkeys(leaving, {"matched_set": None})))
+    leaving = [i for i in part_ids if _set_name(plan.placed(i).part) is not None]
+    return _without_lone(_changed(plan, leaving, matched_set=None), _sets(plan, leaving))
 
 
 def with_coax(plan: Plan, part_id: str, **fields: Any) -> Plan:
     """A coax with other values; cable, length and ends reach all members of its matched set."""
     shared = {name: value for name, value in fields.items() if name in SHARED}
-    return changed_part(_changed(plan, dict.fromkeys(set_of(plan, part_id), shared)), part_id, **fields)
+    return changed_part(_changed(plan, set_of(plan, part_id), **shared), part_id, **fields)
 
 
 def free_set_name(plan: Plan) -> str:
@@ -67,18 +67,17 @@ def _set_name(part: Part) -> str | None:
     return (part.matched_set or None) if isinstance(part, Coax) else None
 
 
-def _changed(plan: Plan, changes: Mapping[str, Mapping[str, Any]]) -> Plan:
-    """Some parts with other values, by id."""
-    return replace(
-        plan,
-        parts=tuple(
-            replace(p, part=replace(p.part, **changes[p.id])) if changes.get(p.id) else p  #
-            for p in plan.parts
-        ),
-    )
+def _sets(plan: Plan, part_ids: Collection[str]) -> set[str | None]:
+    return {_set_name(plan.placed(i).part) for i in part_ids}
 
 
-def _without_single_members(plan: Plan) -> Plan:
-    """The plan without sets of one section."""
-    single = {members[0] for members in matched_sets(plan).values() if len(members) == 1}
-    return _changed(plan, dict.fromkeys(single, {"matched_set": None}))
+def _changed(plan: Plan, part_ids: Collection[str], **fields: Any) -> Plan:
+    """Some parts with other values."""
+    parts = tuple(replace(p, part=replace(p.part, **fields)) if p.id in part_ids else p for p in plan.parts)
+    return replace(plan, parts=parts) if fields else plan
+
+
+def _without_lone(plan: Plan, names: Collection[str | None]) -> Plan:
+    """The plan without those of some sets that have one section left."""
+    lone = [members[0] for name, members in matched_sets(plan).items() if name in names and len(members) == 1]
+    return _changed(plan, lone, matched_set=None)
