@@ -72,8 +72,12 @@ class _Piece:
         self.tree, self.parts, self.sizes, self.port_sides = tree, parts, sizes, port_sides
         self.row = {i: max(LEAST_ROW, _step_up(sizes[i][1] + WORDS, 2 * STEP)) for i in tree.order}
         self.columns = self._columns()
-        self.places = self._across(self._rows())
-        self._centre_loops(mates)
+        self.pull: dict[str, int] = {}
+        y = self._rows()
+        if len(mates) > 2 * len(tree.up):  # otherwise there is no ring
+            self.pull = self._pulls(y, mates)
+            y = self._rows()
+        self.places = self._across(y)
         self.left = min(x - sizes[i][0] / 2 for i, (x, _) in self.places.items())
         self.right = max(x + sizes[i][0] / 2 for i, (x, _) in self.places.items())
         self.top = min(y - self.row[i] / 2 for i, (_, y) in self.places.items())
@@ -111,9 +115,22 @@ class _Piece:
         """Where the port stands that a part hangs at."""
         return self.port_sides[self.tree.up[child][0]]
 
+    def _pulls(self, y: Mapping[str, float], mates: Mapping[Port, Port]) -> dict[str, int]:
+        """For each part that closes a ring, whether its other neighbour is below (1) or above (-1) the near one."""
+        pulls = {}
+        for i in self.tree.up:
+            others = {mates[port].part for port in self.parts[i].ports() if port in mates} - {i}
+            near = self.tree.up[i][0].part
+            if not self.tree.down[i] and (rest := others - {near}):
+                pulls[i] = 1 if sum(y[o] for o in rest) / len(rest) > y[near] else -1
+        return pulls
+
     def _rank(self, child: str) -> tuple[int, float]:
-        """The order of children from top to bottom: those that hang at the left pass over or under the others."""
+        """The order of children from top to bottom: by their ports, but those that hang at the left pass over or
+        under the others, and what closes a ring goes to the side of its other neighbour."""
         side, y = self._exit(child)
+        if child in self.pull:
+            return self.pull[child], y
         entry = self.tree.up.get(self.tree.up[child][0].part)
         above = entry is not None and y < self.port_sides[entry[1]][1]
         return (0 if side == "right" else -1 if above else 1), y
@@ -141,19 +158,6 @@ class _Piece:
             gap = max(FLAG_GAP if busy else GAP, reach / STEEPEST)
             left = max(places[i][0] + self.sizes[i][0] / 2 for i in column) + gap
         return places
-
-    def _centre_loops(self, mates: Mapping[Port, Port]) -> None:
-        """Bring what closes a ring to the middle between its neighbours, where its column has room there."""
-        row = self.row
-        for column in self.columns:
-            for i in column:
-                beside = {mates[port].part for port in self.parts[i].ports() if port in mates} - {i}
-                if self.tree.down[i] or len(beside) < 2:
-                    continue
-                x, _ = self.places[i]
-                y = _stepped(sum(self.places[o][1] for o in beside) / len(beside))
-                if all(abs(y - self.places[o][1]) >= (row[i] + row[o]) / 2 for o in column if o != i):
-                    self.places[i] = (x, y)
 
 
 def _faced(plan: Plan, port_sides: PortSides) -> Plan:

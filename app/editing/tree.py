@@ -14,7 +14,8 @@ class Tree:
     """The parts that hang together at a root; in a ring each hangs where it is reached in the fewest joins.
 
     order : ids, those nearer the root first; up : the join of each but the root, (port nearer the root, own port);
-    down : the parts that hang at each, by the number of its port.
+    down : the parts that hang at each, in the order of its ports; were it turned to face the root with port 1, the
+    order would be the same.
     """
 
     order: list[str]
@@ -62,7 +63,8 @@ def mates_of(plan: Plan) -> dict[Port, Port]:
 def _tree_at(root: str, ports: Mapping[str, tuple[Port, ...]], mates: Mapping[Port, Port]) -> Tree:
     order, up, down = [root], dict[str, Join](), dict[str, list[str]]({root: []})
     for part_id in order:  # grows while it is walked
-        for port in ports[part_id]:
+        own = up[part_id][1] if part_id in up else _open_port(ports[part_id], mates)
+        for port in _as_faced(ports[part_id], own):
             mate = mates.get(port)
             if mate is not None and mate.part not in down:
                 order.append(mate.part)
@@ -72,7 +74,19 @@ def _tree_at(root: str, ports: Mapping[str, tuple[Port, ...]], mates: Mapping[Po
     return Tree(order, up, down)
 
 
+def _as_faced(ports: tuple[Port, ...], near: Port) -> list[Port]:
+    """A part's ports in the order that they have when it faces the root: the near one and port 1 change places."""
+    swapped = {near: ports[0], ports[0]: near}
+    return [swapped.get(port, port) for port in ports]
+
+
+def _open_port(ports: tuple[Port, ...], mates: Mapping[Port, Port]) -> Port:
+    """The first open port, or port 1 where there is none."""
+    return next((port for port in ports if port not in mates), ports[0])
+
+
 def _fitness(placed: Placed, mates: Mapping[Port, Port]) -> tuple[bool, bool, bool]:
     """How well a part serves as a root, the fittest lowest."""
-    all_joined = all(port in mates for port in placed.ports())
-    return not isinstance(placed.part, Radio), placed.part.ports == 1, all_joined
+    if isinstance(placed.part, Radio):
+        return False, False, False
+    return True, placed.part.ports == 1, all(port in mates for port in placed.ports())

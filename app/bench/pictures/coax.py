@@ -6,11 +6,12 @@ import math
 
 import numpy as np
 from PySide6.QtCore import QPointF, QRectF, Qt
-from PySide6.QtGui import QColor, QPainter, QPen, QPolygonF
+from PySide6.QtGui import QColor, QFontMetricsF, QPainter, QPen, QPolygonF
 
-from app.bench.pictures.base import Picture, Shown, one_line, pen, stubs
+from app.bench.pictures.base import Picture, Shown, one_line, pen, stubs, text
 from app.editing.entry import LengthUnit
 from app.editing.wording import format_length
+from app.look import font
 from feedlib.conventions import Array, guided_wavelength_m
 from feedlib.parts import Coax
 from feedlib.plan import Cable, Placed, Plan
@@ -85,6 +86,20 @@ class CoaxPicture(Picture):
             if end is not None:
                 painter.setBrush(QColor(look.impedance_colour(end.z0_ohm)))
                 painter.drawRect(QRectF(x - 4, -6, 8, 12))
+
+        if part.matched_set:
+            self._letter(painter, shown, part.matched_set, body)
+
+    @staticmethod
+    def _letter(painter: QPainter, shown: Shown, name: str, body: QRectF) -> None:
+        """The matched set's letter, on a small card on the swell."""
+        words, face = one_line(name), font("small", bold=True)
+        width = max(18.0, min(60.0, QFontMetricsF(face).horizontalAdvance(words) + 10))
+        card = QRectF(body.right() - width - 5, body.top() - 6, width, 18)
+        painter.setPen(pen(shown.look.ink, 1.1))
+        painter.setBrush(QColor(shown.look.card))
+        painter.drawRoundedRect(card, 9, 9)
+        text(painter, words, QPointF(card.center().x(), card.top() + 1), shown.look.ink, bold=True, widest=54)
 
     @staticmethod
     def _ticks(painter: QPainter, degrees: float, body: QRectF) -> None:

@@ -19,9 +19,11 @@ class TeePicture(Picture):
     def paint(self, painter: QPainter, shown: Shown) -> None:
         look, body = shown.look, self.body(shown.placed, shown.plan)
         painter.setPen(pen(look.ink, 2))
+        many = shown.placed.part.ports > 4
         for port in self.ports(shown.placed, shown.plan):
-            painter.drawLine(QPointF(0, port.y()), port)
-        painter.drawLine(QPointF(0, body.top() + 9), QPointF(0, body.bottom() - 9))
+            painter.drawLine(QPointF(0, port.y() if many else 0), port)
+        if many:
+            painter.drawLine(QPointF(0, body.top() + 9), QPointF(0, body.bottom() - 9))
         painter.setPen(pen(look.ink, 4 if shown.hovered else 3))
         painter.setBrush(QColor(look.card))
         painter.drawEllipse(QPointF(0, 0), 6, 6)
