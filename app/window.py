@@ -6,10 +6,11 @@ from pathlib import Path
 from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QByteArray, QPoint, QPointF, QSettings, Qt
-from PySide6.QtGui import QCloseEvent, QColor, QGuiApplication, QPalette
+from PySide6.QtGui import QCloseEvent, QColor, QCursor, QGuiApplication, QPalette
 from PySide6.QtWidgets import (
     QFileDialog,
     QHBoxLayout,
+    QInputDialog,
     QLabel,
     QMainWindow,
     QMenu,
@@ -20,10 +21,14 @@ from PySide6.QtWidgets import (
 )
 
 from app.actions import build_menus
+from app.bench.hand import Hand
 from app.bench.placing import Placing
 from app.bench.view import BenchView
 from app.editing import edits
+from app.editing.cutting import moved_to_frequency
 from app.editing.edits import new_plan
+from app.editing.entry import EntryError, read_quantity
+from app.editing.wording import format_frequency
 from app.files import Files
 from app.look import DARK, LIGHT, Look, font, palette_of, system_look
 from app.panels.drawer import PartsDrawer
@@ -32,8 +37,9 @@ from app.panels.rail import FrequencyRail
 from app.panels.side_sheet import SideSheet
 from app.panels.style import button_text
 from app.panels.verdicts import VerdictStrip
+from app.reporting import say
 from app.store import Store
-from feedlib import Plan
+from feedlib import Plan, PlanError
 from feedlib.assets_place import ASSETS
 from feedlib.plan import Join, Port
 
@@ -56,6 +62,7 @@ class Window(QMainWindow):
         self.files: Files = Files(self.store, self)
         self.bench: BenchView = BenchView(self.store, self.look)
         self.placing = Placing(self.store, entries(), self)
+        self.hand: Hand = Hand(self.store, self)
         self.drawer = PartsDrawer(self.look)
         self.rail = FrequencyRail(self.store, self.look)
         self.strip = VerdictStrip(self.store, self.look)
@@ -162,6 +169,8 @@ class Window(QMainWindow):
         self.bench.part_dropped.connect(self._dropped)
         self.bench.files_dropped.connect(self._files_dropped)
         self.bench.offer_asked.connect(self._offer)
+        self.bench.walked.connect(self.hand.walk)
+        self.bench.field_asked.connect(self.sheet.focus_first_field)
 
     # --- what people ask for ---
 
@@ -172,6 +181,27 @@ class Window(QMainWindow):
     def select_all(self) -> None:
         """Select every part."""
         self.store.select(tuple(p.id for p in self.store.plan.parts))
+
+    def paste(self) -> None:
+        """Put copied parts in the middle of what is seen, or under the pointer."""
+        here = self.bench.mapFromGlobal(QCursor.pos())
+        inside = self.bench.viewport().rect().contains(here)
+        self.hand.paste(self.bench.mapToScene(here) if inside else self._middle())
+
+    def ask_frequency(self) -> None:
+        """Move the whole plan to another frequency, with all electrical lengths kept."""
+        old = format_frequency(self.store.plan.band.marked_hz)
+        words, given = QInputDialog.getText(self, "Move to another frequency", "The mark's new frequency:", text=old)
+        if not given:
+            return
+        try:
+            plan, left = moved_to_frequency(self.store.plan, read_quantity(words, unit="Hz"))
+        except (EntryError, PlanError) as error:
+            say(self, "The plan is not moved", f"{error}")
+            return
+        self.store.edit(f"Move to {format_frequency(plan.band.marked_hz)}", plan)
+        if left:
+            say(self, "Measured data stays", f"Measured data cannot move: {', '.join(left)} are as they were.")
 
     def choose_theme(self, theme: str) -> None:
         """Light, dark, or as the system has it; remembered."""

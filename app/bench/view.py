@@ -28,18 +28,26 @@ from feedlib.plan import Join, Port
 
 PART_MIME = "application/x-feedwright-part"
 SMALLEST, LARGEST = 0.08, 4.0
+WALKS = {
+    Qt.Key.Key_Left: "left",
+    Qt.Key.Key_Right: "right",
+    Qt.Key.Key_Up: "up",
+    Qt.Key.Key_Down: "down",
+}
 
 
 class BenchView(QGraphicsView):
     """Shows the bench and lets people work on it.
 
     part_dropped(key, point, join or None): an entry of the parts drawer was dropped. offer_asked(port, point, screen
-    point): a join was pulled into the empty bench.
+    point): a join was pulled into the empty bench. walked(direction): an arrow key. field_asked(): Enter.
     """
 
     part_dropped = Signal(str, QPointF, object)
     files_dropped = Signal(list, QPointF)
     offer_asked = Signal(object, QPointF, QPoint)
+    walked = Signal(str)
+    field_asked = Signal()
 
     def __init__(self, store: Store, look: Look, parent: QWidget | None = None) -> None:
         super().__init__(parent)
@@ -253,6 +261,10 @@ class BenchView(QGraphicsView):
             else:
                 self.store.select(())
                 self.bench.select_join(None)
+        elif key in WALKS and not event.modifiers() & ~Qt.KeyboardModifier.KeypadModifier:
+            self.walked.emit(WALKS[Qt.Key(key)])
+        elif key in (Qt.Key.Key_Return, Qt.Key.Key_Enter):
+            self.field_asked.emit()
         elif key in (Qt.Key.Key_Plus, Qt.Key.Key_Equal):
             self.turn_length(1, event.modifiers() & Qt.KeyboardModifier.AltModifier)
         elif key in (Qt.Key.Key_Minus, Qt.Key.Key_Underscore):

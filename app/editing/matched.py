@@ -51,10 +51,10 @@ def with_coax(plan: Plan, part_id: str, **fields: Any) -> Plan:
 def free_set_name(plan: Plan) -> str:
     """The first of A, B ... Z, AA, AB ... that no matched set is called."""
     taken = matched_sets(plan)
-    return next(name for name in map(_letters, count(1)) if name not in taken)
+    return next(name for name in map(letters, count(1)) if name not in taken)
 
 
-def _letters(number: int) -> str:
+def letters(number: int) -> str:
     """The number of a column in letters: 1 is A, 26 is Z, 27 is AA."""
     letters = ""
     while number:

@@ -32,7 +32,7 @@ class FigureBlock(QWidget):
 
     def show_rows(self, head: str, rows: Sequence[Row]) -> None:
         """Show these figures."""
-        set_text(self._head, head)
+        self.set_head(head)
         while len(self._rows) < len(rows):
             self._add()
         for number, (name, value) in enumerate(self._rows):
@@ -48,6 +48,10 @@ class FigureBlock(QWidget):
             if there == name.isHidden():
                 name.setVisible(there)
                 value.setVisible(there)
+
+    def set_head(self, head: str) -> None:
+        """Show another head over the same figures."""
+        set_text(self._head, head)
 
     def _add(self) -> None:
         name, value = plain_label(role="soft"), plain_label()

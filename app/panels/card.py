@@ -1,28 +1,33 @@
-"""The part card: the selected part's fields, its figures at the mark and its problems. Knows no kinds of part."""
+"""The part card: the selected part's fields, its figures at the mark and its problems.
+
+Of the kinds of part it knows coax alone: it has rows of its own, and changes together with its matched set.
+"""
 
 from __future__ import annotations
 
 from typing import Any
 
 from PySide6.QtGui import QShowEvent
-from PySide6.QtWidgets import QPushButton, QVBoxLayout, QWidget
+from PySide6.QtWidgets import QVBoxLayout, QWidget
 
-from app.editing import edits
+from app.editing import edits, matched
 from app.editing.wording import format_frequency
 from app.look import Look
 from app.panels.around import Around, mates_of
 from app.panels.blocks import FigureBlock, ProblemBlock, rule
+from app.panels.coax_rows import CoaxRows
 from app.panels.controls import LineField
 from app.panels.editors import NoteEditor, TextEditor
 from app.panels.fields import form_for
 from app.panels.figures import figure_rows
 from app.panels.forms import RecordForm
+from app.panels.several import SeveralParts
 from app.panels.shelf import stocked
 from app.panels.style import MARGIN, dress, plain_label, set_text, tooltip
 from app.panels.tab_order import tab_through
 from app.store import Store
 from feedlib.errors import PlanError
-from feedlib.parts import Part
+from feedlib.parts import Coax, Part
 from feedlib.plan import Placed, Plan
 from feedlib.schema import specs
 
@@ -38,7 +43,7 @@ class PartCard(QWidget):
         self.setProperty("role", "card")
         layout = QVBoxLayout(self)
         layout.setContentsMargins(MARGIN, 12, MARGIN, MARGIN)
-        self._one, self._several = _OnePart(store, look), _SeveralParts(store)
+        self._one, self._several = _OnePart(store, look), SeveralParts(store)
         layout.addWidget(self._one)
         layout.addWidget(self._several)
         layout.addStretch(1)
@@ -46,6 +51,7 @@ class PartCard(QWidget):
         store.plan_changed.connect(self._plan_changed)
         store.selection_changed.connect(self._show)
         store.answer_changed.connect(self._judge)
+        store.stale_changed.connect(self._tell_stale)
         self._show()
 
     def set_look(self, look: Look) -> None:
@@ -75,7 +81,7 @@ class PartCard(QWidget):
         if one:
             self._one.fill(store.plan.placed(store.selected[0]))
         else:
-            self._several.fill([store.plan.placed(part_id).name for part_id in store.selected])
+            self._several.fill()
 
     def _judge(self) -> None:
         """Show what the answer says."""
@@ -83,13 +89,19 @@ class PartCard(QWidget):
         if self.isHidden() or len(store.selected) != 1:
             return
         part_id = store.selected[0]
-        if store.answer is not None:
-            head = f"At {format_frequency(store.answer.plan.band.marked_hz)}"
-            rows = figure_rows(store.answer, part_id)
-        else:
-            head, rows = f"Not solved: {(store.why_not or '').rstrip('.')}.", []
-        self._one.figures.show_rows(head, rows)
+        rows = [] if store.answer is None else figure_rows(store.answer, part_id)
+        self._one.figures.show_rows(self._head(), rows)
         self._one.problems.show_problems([(p, "") for p in store.problems if p.part_id == part_id])
+
+    def _tell_stale(self) -> None:
+        """Say while the figures belong to an older plan."""
+        self._one.figures.set_head(self._head())
+
+    def _head(self) -> str:
+        store = self._store
+        if store.answer is None:
+            return f"Not solved: {(store.why_not or '').rstrip('.')}."
+        return f"At {format_frequency(store.answer.plan.band.marked_hz)}{', being solved…' if store.stale else ''}"
 
 
 class _OnePart(QWidget):
@@ -100,6 +112,7 @@ class _OnePart(QWidget):
         self._store = store
         self._placed: Placed | None = None
         self._forms: dict[type[Part], RecordForm] = {}
+        self._coax_rows: CoaxRows | None = None
         self._name = LineField("Name")
         self._name.setProperty("role", "name")
         self._kind = plain_label(role="soft")
@@ -138,6 +151,8 @@ class _OnePart(QWidget):
         set_text(self._kind, kind_and_place(store.plan, placed))
         self._id.fill(placed.id, around)
         form.fill(placed.part, around)
+        if self._coax_rows is not None and isinstance(placed.part, Coax):
+            self._coax_rows.fill(placed, plan)
         self._note.fill(placed.note, around)
 
     def _form(self, cls: type[Part]) -> RecordForm:
@@ -145,6 +160,9 @@ class _OnePart(QWidget):
         if cls not in self._forms:
             form = self._forms[cls] = form_for(cls)
             form.entered.connect(self._changed)
+            if cls is Coax:
+                self._coax_rows = CoaxRows(self._store)
+                form.put_after("length_m", self._coax_rows)
             self._place.addWidget(form)
             tab_through(self._id.control, form)
         for kind, form in self._forms.items():
@@ -183,8 +201,9 @@ class _OnePart(QWidget):
         assert self._placed is not None
         store, placed = self._store, self._placed
         name = next(reversed(changes))
+        change = matched.with_coax if isinstance(placed.part, Coax) else edits.changed_part
         try:
-            plan = edits.changed_part(store.plan, placed.id, **changes)
+            plan = change(store.plan, placed.id, **changes)
         except PlanError as error:
             self._forms[type(placed.part)].refuse(error, name)
             return
@@ -196,33 +215,6 @@ class _OnePart(QWidget):
         elif turned:
             merge = f"length {placed.id} {name}"
         store.edit(text, stocked(plan, changes.get("cable")), merge=merge)
-
-
-class _SeveralParts(QWidget):
-    """Several selected parts in short, and what can be done with all of them."""
-
-    def __init__(self, store: Store) -> None:
-        super().__init__()
-        self._store = store
-        self._head, self._names = plain_label(role="title"), plain_label(role="soft")
-        self._delete = QPushButton("Delete")
-        self._delete.setAccessibleName("Delete the selected parts")
-        self._delete.clicked.connect(self._delete_all)
-        layout = QVBoxLayout(self)
-        layout.setContentsMargins(0, 0, 0, 0)
-        layout.setSpacing(8)
-        for widget in (self._head, self._names, self._delete):
-            layout.addWidget(widget)
-
-    def fill(self, names: list[str]) -> None:
-        """Show the names of some parts."""
-        set_text(self._head, f"{len(names)} parts selected")
-        more = len(names) - MOST_NAMES
-        set_text(self._names, ", ".join(names[:MOST_NAMES]) + (f" and {more} more" if more > 0 else ""))
-
-    def _delete_all(self) -> None:
-        selected = self._store.selected
-        self._store.edit(f"Delete {len(selected)} parts", edits.removed(self._store.plan, selected))
 
 
 def kind_and_place(plan: Plan, placed: Placed) -> str:

@@ -13,12 +13,9 @@ from PySide6.QtGui import (
     QResizeEvent,
     QWheelEvent,
 )
-from PySide6.QtWidgets import QComboBox, QLineEdit, QPlainTextEdit, QStyledItemDelegate
+from PySide6.QtWidgets import QAbstractButton, QComboBox, QLineEdit, QPlainTextEdit, QStyledItemDelegate, QWidget
 
 from app.panels.style import plain_label, set_text
-
-NOTCH = 120
-"""One notch of a wheel in Qt's eighths of a degree."""
 
 
 class LineField(QLineEdit):
@@ -34,6 +31,7 @@ class LineField(QLineEdit):
         self._note.setParent(self)
         self._note.setWordWrap(False)
         self._note.setAttribute(Qt.WidgetAttribute.WA_TransparentForMouseEvents)
+        self._kept_px = 0
         self.editingFinished.connect(self._finished)
 
     def show_text(self, text: str) -> None:
@@ -49,6 +47,11 @@ class LineField(QLineEdit):
             set_text(self._note, text)
             self._place_note()
 
+    def keep_free(self, width_px: int) -> None:
+        """Leave so much of the line's end to something else."""
+        self._kept_px = width_px
+        self._place_note()
+
     def resizeEvent(self, event: QResizeEvent) -> None:
         super().resizeEvent(event)
         self._place_note()
@@ -63,8 +66,8 @@ class LineField(QLineEdit):
         self._note.ensurePolished()
         width = self._note.sizeHint().width() if self._note.text() else 0
         self._note.setVisible(0 < width < self.width() - 40)
-        self.setTextMargins(0, 0, width + 6 if self._note.isVisibleTo(self) else 0, 0)
-        self._note.setGeometry(self.width() - width - 7, 0, width, self.height())
+        self.setTextMargins(0, 0, self._kept_px + (width + 6 if self._note.isVisibleTo(self) else 0), 0)
+        self._note.setGeometry(self.width() - width - 7 - self._kept_px, 0, width, self.height())
 
     def _finished(self) -> None:
         if self.isModified():
@@ -72,22 +75,16 @@ class LineField(QLineEdit):
             self.typed.emit(self.text())
 
 
-class TurnedField(LineField):
-    """A line that the wheel turns as long as `turns` is set: `turned`(notches, modifiers)."""
+class MoreButton(QAbstractButton):
+    """What stands at the end of a line and opens a menu; the line has the key for it."""
 
-    turned = Signal(float, object)
+    def __init__(self, line: LineField) -> None:
+        super().__init__(line)
+        self.setFocusPolicy(Qt.FocusPolicy.NoFocus)
+        self.setCursor(Qt.CursorShape.PointingHandCursor)
 
-    def __init__(self, name: str) -> None:
-        super().__init__(name)
-        self.turns = False
-
-    def wheelEvent(self, event: QWheelEvent) -> None:
-        if not self.turns or self.isModified():
-            event.ignore()
-            return
-        event.accept()
-        # With Alt held down some systems report the wheel as turned sideways.
-        self.turned.emit((event.angleDelta().y() or event.angleDelta().x()) / NOTCH, event.modifiers())
+    def paintEvent(self, event: QPaintEvent) -> None:
+        paint_chevron(self)
 
 
 class ChoiceBox(QComboBox):
@@ -115,11 +112,7 @@ class ChoiceBox(QComboBox):
 
     def paintEvent(self, event: QPaintEvent) -> None:
         super().paintEvent(event)
-        painter = QPainter(self)
-        painter.setRenderHint(QPainter.RenderHint.Antialiasing)
-        painter.setPen(QPen(self.palette().color(QPalette.ColorRole.Text), 1.4))
-        x, y = self.width() - 14, self.height() / 2
-        painter.drawPolyline([QPointF(x - 4, y - 2), QPointF(x, y + 2), QPointF(x + 4, y - 2)])
+        paint_chevron(self)
 
 
 class NoteField(QPlainTextEdit):
@@ -144,3 +137,12 @@ class NoteField(QPlainTextEdit):
         if self.document().isModified() and event.reason() != Qt.FocusReason.PopupFocusReason:
             self.document().setModified(False)
             self.typed.emit(self.toPlainText())
+
+
+def paint_chevron(widget: QWidget) -> None:
+    """Draw the sign of more to choose from at a widget's right end."""
+    painter = QPainter(widget)
+    painter.setRenderHint(QPainter.RenderHint.Antialiasing)
+    painter.setPen(QPen(widget.palette().color(QPalette.ColorRole.Text), 1.4))
+    x, y = widget.width() - 14, widget.height() / 2
+    painter.drawPolyline([QPointF(x - 4, y - 2), QPointF(x, y + 2), QPointF(x + 4, y - 2)])

@@ -8,22 +8,14 @@ from __future__ import annotations
 from collections.abc import Mapping
 from typing import Any, ClassVar
 
-from PySide6.QtCore import Qt, Signal
+from PySide6.QtCore import Signal
 from PySide6.QtWidgets import QHBoxLayout, QVBoxLayout, QWidget
 
-from app.editing.entry import EntryError, read_complex_ohm, read_length_m, read_quantity
-from app.editing.wording import (
-    editable_impedance,
-    editable_length,
-    editable_quantity,
-    field_unit,
-    format_frequency,
-    format_length,
-    wheel_step_m,
-)
+from app.editing.entry import EntryError, read_complex_ohm, read_quantity
+from app.editing.wording import editable_impedance, editable_quantity, field_unit
 from app.look import SIGNS
 from app.panels.around import Around
-from app.panels.controls import ChoiceBox, LineField, NoteField, TurnedField
+from app.panels.controls import ChoiceBox, LineField, NoteField
 from app.panels.style import plain_label, set_text
 
 LABEL_WIDTH = 108
@@ -230,55 +222,6 @@ class ImpedanceEditor(TextEditor):
 
     def write(self, value: Any, around: Around) -> str:
         return editable_impedance(value)
-
-
-class LengthEditor(TextEditor):
-    """A length; the wheel turns it, and the line under it says it in degrees, wavelengths and picoseconds."""
-
-    LINE = TurnedField
-
-    def __init__(self, label: str, **look: Any) -> None:
-        super().__init__(label, wide=True, **look)
-        self._notches = 0.0
-        assert isinstance(self.line, TurnedField)
-        self.line.turned.connect(self._turned)
-
-    def read(self, text: str, around: Around) -> float:
-        return read_length_m(text, frequency_hz=around.frequency_hz, velocity_factor=around.velocity_factor)
-
-    def write(self, value: Any, around: Around) -> str:
-        return editable_length(value, "mm", frequency_hz=None, velocity_factor=None)
-
-    def show_value(self, value: Any, around: Around) -> None:
-        super().show_value(value, around)
-        assert isinstance(self.line, TurnedField)
-        self.line.turns = value is not None and around.velocity_factor is not None
-        if value is None:
-            return
-        known: dict[str, Any] = {"frequency_hz": around.frequency_hz, "velocity_factor": around.velocity_factor}
-        self.line.set_note(format_length(value, "in", **known))
-        if around.velocity_factor is None:
-            self.say("")
-            return
-        angle = f"{format_length(value, 'deg', **known)} at {format_frequency(around.frequency_hz)}"
-        self.say(" · ".join([angle, format_length(value, "wl", **known), format_length(value, "ps", **known)]))
-
-    def _turned(self, notches: float, modifiers: Qt.KeyboardModifier) -> None:
-        """A notch is one step, with Shift ten, with Alt a tenth of one."""
-        around = self._around
-        assert around is not None
-        assert around.velocity_factor is not None
-        self._notches += notches
-        whole = int(self._notches)
-        if not whole:
-            return
-        self._notches -= whole
-        step_m = wheel_step_m(frequency_hz=around.frequency_hz, velocity_factor=around.velocity_factor)
-        if modifiers & Qt.KeyboardModifier.ShiftModifier:
-            step_m *= 10
-        elif modifiers & Qt.KeyboardModifier.AltModifier:
-            step_m /= 10
-        self._enter(max(0.0, round(self._value + whole * step_m, 9)), turned=True)
 
 
 class ChoiceEditor(FieldEditor):

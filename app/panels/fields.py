@@ -15,13 +15,13 @@ from app.panels.editors import (
     ChoiceEditor,
     Editor,
     ImpedanceEditor,
-    LengthEditor,
     QuantityEditor,
     TextEditor,
     WholeEditor,
 )
 from app.panels.file_editor import FileEditor
 from app.panels.forms import ChosenEditor, EachEditor, OptionalEditor, RecordEditor, RecordForm
+from app.panels.length_editor import LengthEditor
 from feedlib.parts import AntennaImpedance, CoaxEnd, Resonant, TouchstoneText
 from feedlib.plan import Sweep
 from feedlib.schema import Record, Spec, specs
@@ -31,9 +31,10 @@ FIRST_Q = 10.0
 
 
 def form_for(cls: type[Record]) -> RecordForm:
-    """A form with an editor for every described field of a record."""
+    """A form with an editor for every described field of a record that has no row of its own."""
     hints = _hints(cls)
-    return RecordForm(cls, {name: editor_for(name, hints[name], spec) for name, spec in specs(cls).items()})
+    shown = {name: spec for name, spec in specs(cls).items() if name not in _ELSEWHERE}
+    return RecordForm(cls, {name: editor_for(name, hints[name], spec) for name, spec in shown.items()})
 
 
 def editor_for(name: str, hint: Any, spec: Spec) -> Editor:
@@ -123,6 +124,9 @@ _OPTIONAL: dict[type[Record], tuple[str, Callable[[Around], Record]]] = {
 
 _NAMED: Mapping[str, Callable[[str], Editor]] = {"cable": CableEditor}
 """Texts that name something of the plan."""
+
+_ELSEWHERE = {"matched_set"}
+"""Fields of one part that are changed together with other parts, in rows of their own."""
 
 _SCALARS: Mapping[Any, Callable[..., Editor]] = {int: WholeEditor, complex: ImpedanceEditor, str: TextEditor}
 

@@ -61,6 +61,11 @@ class RecordForm(QWidget):
         self._fault = plain_label(role="fault")
         self._fault.hide()
         layout.addWidget(self._fault)
+        self._layout = layout
+
+    def put_after(self, name: str, widget: QWidget) -> None:
+        """Let something stand under a field."""
+        self._layout.insertWidget(self._layout.indexOf(self.editors[name]) + 1, widget)
 
     def fill(self, record: Record, around: Around) -> None:
         """Show a record's values."""

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from PySide6.QtCore import Qt
-from PySide6.QtWidgets import QFrame, QScrollArea, QVBoxLayout, QWidget
+from PySide6.QtWidgets import QFrame, QLineEdit, QScrollArea, QVBoxLayout, QWidget
 
 from app.look import Look
 from app.panels.card import PartCard
@@ -40,6 +40,16 @@ class SideSheet(QScrollArea):
         dress(self, look)
         self.part_card.set_look(look)
         self.plan_card.set_look(look)
+
+    def focus_first_field(self) -> None:
+        """Put the cursor where the selected part is most often changed: its length, else its first field."""
+        card = self.part_card if self._store.selected else self.plan_card
+        fields = [field for field in card.findChildren(QLineEdit) if field.isVisible() and field.isEnabled()]
+        wanted = [f for f in fields if f.accessibleName().startswith("Length")]
+        own = [f for f in fields if f.accessibleName() not in ("Label", "Id", "Title")]
+        for field in (*wanted, *own, *fields)[:1]:
+            field.setFocus(Qt.FocusReason.ShortcutFocusReason)
+            field.selectAll()
 
     def _switch(self) -> None:
         part = bool(self._store.selected)

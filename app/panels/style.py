@@ -110,7 +110,7 @@ QComboBox QAbstractItemView {{
 QComboBox QAbstractItemView::item {{ padding: 3px 6px; }}
 QComboBox QAbstractItemView::item:selected {{ background: {look.band_wash}; color: {look.ink}; }}
 QComboBox QAbstractItemView::item:disabled {{ color: {look.soft}; }}
-QMenu {{ background: {look.card}; border: 1px solid {look.hairline}; padding: 4px; }}
+QMenu {{ background: {look.card}; border: 1px solid {look.hairline}; padding: 4px; menu-scrollable: 1; }}
 QMenu::item {{ padding: 4px 20px 4px 12px; }}
 QMenu::item:selected {{ background: {look.band_wash}; }}
 QMenu::item:disabled {{ color: {look.soft}; }}
@@ -127,8 +127,11 @@ QPushButton[role="bare"]:focus {{ border-color: {look.ink}; }}
 QPushButton[role="icon"] {{ background: transparent; border-color: transparent; padding: 1px 4px; }}
 QPushButton[role="icon"]:hover {{ border-color: {look.hairline}; }}
 QPushButton[role="icon"]:focus {{ border-color: {look.ink}; }}
+QPushButton[role="chip"] {{ border-radius: 11px; padding: 1px 8px; font-size: {SIZES["small"]}px; }}
+QPushButton:disabled {{ color: {look.soft}; }}
 QFrame[role="problem"] {{ background: {look.fails_wash}; border: 1px solid transparent; border-radius: 6px; }}
 QFrame[role="problem"]:focus {{ border-color: {look.ink}; }}
+QFrame[role="over"] {{ background: {look.card}; border: 1px solid {look.hairline}; border-radius: 6px; }}
 QFrame[role="rule"] {{ background: {look.hairline}; border: none; max-height: 1px; min-height: 1px; }}
 QScrollArea {{ background: transparent; border: none; }}
 QScrollBar:vertical {{ background: transparent; width: 8px; margin: 0; }}

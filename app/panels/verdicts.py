@@ -2,22 +2,25 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from functools import partial
 
 import numpy as np
-from PySide6.QtCore import QRectF, QSize, Qt
-from PySide6.QtGui import QColor, QFontMetrics, QKeyEvent, QPainter, QPaintEvent, QPen
-from PySide6.QtWidgets import QAbstractButton, QHBoxLayout, QSizePolicy, QWidget
+from PySide6.QtCore import QPoint, QRect
+from PySide6.QtGui import QResizeEvent
+from PySide6.QtWidgets import QHBoxLayout, QWidget
 
 from app.editing import edits
 from app.editing.wording import editable_quantity, format_angle, format_db, format_frequency
-from app.look import SIGNS, Look, Verdict, font
+from app.look import Look, Verdict
 from app.panels.deciders import deciders
-from app.panels.style import dress, readable, tooltip
+from app.panels.forms import refusal
+from app.panels.limit_field import LimitField
+from app.panels.style import dress
+from app.panels.verdict_item import HEIGHT, Shown, VerdictItem
 from app.store import Store
 from feedlib import Answer
 from feedlib.answer import JUDGED
+from feedlib.errors import PlanError
 from feedlib.plan import Limits
 from feedlib.schema import specs
 
@@ -28,21 +31,8 @@ ALWAYS_SHOWN = ("return_loss_db", "harness_loss_db")
 SHOWN_WITH_ANTENNAS = ("amplitude_balance_db", "phase_balance_deg")
 """Figures that are shown without a limit too, the second kind where there are two antennas or more."""
 
-HEIGHT = 48
-_BAR, _GAP, _PAD = 4, 10, 6
-
-
-@dataclass(frozen=True, slots=True)
-class Shown:
-    """What one item says. wants : empty without a limit; about : the limit's name in the plan, or None."""
-
-    name: str
-    state: Verdict
-    figure: str
-    wants: str
-    spoken: str
-    about: str | None = None
-    frequency_hz: float | None = None
+BEHIND = "of the plan before the last change; being solved"
+"""What is told of a figure while its answer is older than the plan."""
 
 
 def judged(limit: str, worst: float, wanted: float) -> Verdict:
@@ -94,13 +84,14 @@ def _figure(limit: str, value: float) -> str:
 
 
 class VerdictStrip(QWidget):
-    """The row of verdicts. A click goes to the frequency and the part that decide one."""
+    """The row of verdicts. A click goes to what decides one, a double-click sets its limit."""
 
     def __init__(self, store: Store, look: Look) -> None:
         super().__init__()
         self._store, self._look = store, look
         self._items: list[VerdictItem] = []
         self._awaited: str | None = None
+        self._field: LimitField | None = None
         self._row = QHBoxLayout(self)
         self._row.setContentsMargins(12, 0, 12, 0)
         self._row.setSpacing(4)
@@ -108,7 +99,7 @@ class VerdictStrip(QWidget):
         self.setAccessibleName("Verdicts")
         self.set_look(look)
         store.answer_changed.connect(self._refresh)
-        store.stale_changed.connect(self._repaint)
+        store.stale_changed.connect(self._tell_stale)
         self._refresh()
 
     def set_look(self, look: Look) -> None:
@@ -117,7 +108,9 @@ class VerdictStrip(QWidget):
         dress(self, look)
         for item in self._items:
             item.look = look
-        self._repaint()
+            item.update()
+        if self._field is not None:
+            self._field.set_look(look)
 
     @property
     def items(self) -> tuple[VerdictItem, ...]:
@@ -134,6 +127,7 @@ class VerdictStrip(QWidget):
         while len(self._items) < len(shown):
             item = VerdictItem(store, self._look)
             item.clicked.connect(partial(self._clicked, item))
+            item.limit_asked.connect(partial(self._ask_limit, item))
             self._items.append(item)
             self._row.addWidget(item, 1)
         for number, item in enumerate(self._items):
@@ -142,6 +136,58 @@ class VerdictStrip(QWidget):
                 item.show_verdict(shown[number])
         if self._awaited is not None:
             self._select_deciders(self._awaited)
+        if self._field is not None:
+            self._field.fill(store.plan)
+            self._place_field()
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        super().resizeEvent(event)
+        self._place_field()
+
+    def _ask_limit(self, item: VerdictItem) -> None:
+        """Open the field for a verdict's limit."""
+        self._end_field()
+        if item.shown.about is None:
+            return
+        field = self._field = LimitField(item.shown.about, self._look, self.window())
+        field.entered.connect(self._limit_entered)
+        field.left.connect(self._end_field)
+        field.fill(self._store.plan)
+        field.show()
+        self._place_field()
+        field.take_hold()
+
+    def _limit_entered(self, value: float | None) -> None:
+        field, store = self._field, self._store
+        if field is None:
+            return
+        label = specs(Limits)[field.limit].label.lower()
+        try:
+            plan = edits.with_limit(store.plan, field.limit, value)
+        except PlanError as error:
+            field.refuse(refusal(error, Limits))
+        else:
+            store.edit(f"Change limit on {label}", plan)
+
+    def _place_field(self) -> None:
+        """Keep the field over its verdict; without one it goes."""
+        if self._field is None:
+            return
+        item = next((i for i in self.items if i.shown.about == self._field.limit), None)
+        if item is None:
+            self._end_field()
+        else:
+            self._field.place(QRect(item.mapTo(self.window(), QPoint(0, 0)), item.size()))
+
+    def _end_field(self) -> None:
+        field, self._field = self._field, None
+        if field is None:
+            return
+        item = next((i for i in self.items if i.shown.about == field.limit), None)
+        if item is not None and field.editor.line.hasFocus():
+            item.setFocus()
+        field.hide()
+        field.deleteLater()
 
     def _clicked(self, item: VerdictItem) -> None:
         store, shown = self._store, item.shown
@@ -160,100 +206,7 @@ class VerdictStrip(QWidget):
         if not store.stale and store.answer is not None:
             store.select(deciders(store.answer, limit))
 
-    def _repaint(self) -> None:
+    def _tell_stale(self) -> None:
         for item in self._items:
+            item.setAccessibleDescription(BEHIND if self._store.stale else "")
             item.update()
-
-
-class VerdictItem(QAbstractButton):
-    """One verdict: a bar, its name and sign, its figure and what is wanted."""
-
-    def __init__(self, store: Store, look: Look) -> None:
-        super().__init__()
-        self.look, self._store = look, store
-        self.shown = Shown("", "unknown", "", "", "")
-        self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
-        self.setCursor(Qt.CursorShape.PointingHandCursor)
-        self.setSizePolicy(QSizePolicy.Policy.Preferred, QSizePolicy.Policy.Expanding)
-
-    def show_verdict(self, shown: Shown) -> None:
-        """Show a verdict."""
-        if shown == self.shown:
-            return
-        wider = (len(shown.figure), shown.wants, shown.name) != (
-            len(self.shown.figure),
-            self.shown.wants,
-            self.shown.name,
-        )
-        self.shown = shown
-        self.setAccessibleName(shown.spoken)
-        self.setToolTip(tooltip(shown.spoken))
-        if wider:
-            self.updateGeometry()
-        self.update()
-
-    def sizeHint(self) -> QSize:
-        wants = QFontMetrics(font("small")).horizontalAdvance(self._wants_texts()[0])
-        return QSize(self._least_width() + wants + _PAD, HEIGHT)
-
-    def minimumSizeHint(self) -> QSize:
-        return QSize(self._least_width(), HEIGHT)
-
-    def keyPressEvent(self, event: QKeyEvent) -> None:
-        if event.key() in (Qt.Key.Key_Return, Qt.Key.Key_Enter):
-            self.click()
-        else:
-            super().keyPressEvent(event)
-
-    def paintEvent(self, event: QPaintEvent) -> None:
-        look, shown = self.look, self.shown
-        painter = QPainter(self)
-        painter.setRenderHint(QPainter.RenderHint.Antialiasing)
-        box = self.rect().adjusted(2, 3, -3, -4)
-        if self.hasFocus():
-            painter.setPen(QPen(QColor(look.ink), 1))
-            painter.drawRoundedRect(QRectF(box).adjusted(0.5, 0.5, -0.5, -0.5), 4, 4)
-        elif self.underMouse():
-            painter.setPen(Qt.PenStyle.NoPen)
-            painter.setBrush(QColor(look.band_wash))
-            painter.drawRoundedRect(QRectF(box), 4, 4)
-        painter.setPen(Qt.PenStyle.NoPen)
-        painter.setBrush(QColor(look.verdict(shown.state)))
-        painter.drawRoundedRect(QRectF(box.left() + _PAD, box.top() + 4, _BAR, box.height() - 8), 2, 2)
-        left = box.left() + _PAD + _BAR + _GAP
-        room = box.right() - _PAD - left
-        upper, lower = box.top() + 15, box.bottom() - 6
-
-        small = QFontMetrics(font("small"))
-        painter.setFont(font("small"))
-        painter.setPen(QColor(look.soft))
-        painter.drawText(left, upper, shown.name)
-        painter.setFont(font("text", bold=True))
-        painter.setPen(QColor(readable(look, look.verdict(shown.state), look.paper)))
-        sign = "…" if self._store.stale else SIGNS[shown.state]
-        painter.drawText(left + small.horizontalAdvance(shown.name) + 8, upper, sign)
-
-        painter.setFont(font("head", bold=True))
-        painter.setPen(QColor(look.ink))
-        painter.drawText(left, lower, shown.figure)
-        taken = QFontMetrics(font("head", bold=True)).horizontalAdvance(shown.figure) + 8 if shown.figure else 0
-        painter.setFont(font("small"))
-        painter.setPen(QColor(look.soft if shown.figure else look.ink))
-        texts = self._wants_texts()
-        text = next((t for t in texts if small.horizontalAdvance(t) <= room - taken), texts[-1])
-        painter.drawText(left + taken, lower, small.elidedText(text, Qt.TextElideMode.ElideRight, room - taken))
-
-    def _wants_texts(self) -> tuple[str, ...]:
-        """What is wanted, from the longest way to say it to the shortest."""
-        shown = self.shown
-        if not shown.figure:
-            return (shown.wants,)
-        return (f"wants {shown.wants}", shown.wants) if shown.wants else ("no limit",)
-
-    def _least_width(self) -> int:
-        small = QFontMetrics(font("small"))
-        upper = small.horizontalAdvance(self.shown.name) + 8 + 14
-        lower = QFontMetrics(font("head", bold=True)).horizontalAdvance(self.shown.figure) + 8
-        if self.shown.figure:
-            lower += small.horizontalAdvance(self._wants_texts()[-1])
-        return max(upper, lower) + 5 + 2 * _PAD + _BAR + _GAP

@@ -6,7 +6,8 @@ import random
 from collections.abc import Callable, Iterator
 
 import pytest
-from PySide6.QtCore import QPointF, Qt, QTimer
+from PySide6.QtCore import QEvent, QPointF, Qt, QTimer
+from PySide6.QtGui import QMouseEvent
 from PySide6.QtTest import QTest
 from PySide6.QtWidgets import QApplication
 from pytestqt.qtbot import QtBot
@@ -27,10 +28,20 @@ def whole(qtbot: QtBot) -> tuple[Window, Hands]:
 
 @pytest.fixture
 def hands(whole: tuple[Window, Hands]) -> Iterator[Hands]:
-    """Hands on the window's bench; afterwards nothing is left of what they began."""
+    """Hands on the window's bench that wave every menu away; afterwards nothing is left of what they began."""
     made = whole[1]
+    closer = QTimer()
+    closer.timeout.connect(_close_popup)
+    closer.start(0)
     yield made
+    closer.stop()
     as_planned(made)
+
+
+def _close_popup() -> None:
+    popup = QApplication.activePopupWidget()
+    if popup is not None:
+        popup.close()
 
 
 def as_planned(hands: Hands) -> None:
@@ -161,29 +172,18 @@ def test_a_release_outside_the_window(hands: Hands, begun: Callable[[], QPointF]
     begun()
     hands.move((-9000, 9000))
     hands.release((-9000, 9000))
-    while QApplication.activePopupWidget() is not None:
-        QApplication.activePopupWidget().close()
 
 
 def test_a_release_that_never_comes(hands: Hands, begun: Callable[[], QPointF]) -> None:
     """As when a dialog came up meanwhile: the next move of a free pointer ends it."""
     place = begun()
-    popup_free = hands.view.viewport()
-    QTest.mouseMove(popup_free, hands.pixel(place))
-    event_place = hands.pixel(place + QPointF(30, 30))
-    _free_move(hands, event_place)
-    assert undone_by(hands)[1] in ("Add", "Turn leg A")
+    free, none = hands.view.viewport(), Qt.MouseButton.NoButton
+    here = QPointF(hands.pixel(place + QPointF(30, 30)))
+    moved = QMouseEvent(QEvent.Type.MouseMove, here, free.mapToGlobal(here), none, none, PLAIN)
+    QApplication.sendEvent(free, moved)
+    assert hands.view._gesture is None
     hands.release(place)
     assert undone_by(hands) == (2, "Add")
-
-
-def _free_move(hands: Hands, where: object) -> None:
-    from PySide6.QtCore import QEvent
-    from PySide6.QtGui import QMouseEvent
-
-    port, none = hands.view.viewport(), Qt.MouseButton.NoButton
-    here = QPointF(where)
-    QApplication.sendEvent(port, QMouseEvent(QEvent.Type.MouseMove, here, port.mapToGlobal(here), none, none, PLAIN))
 
 
 def test_a_release_without_a_press(hands: Hands) -> None:
@@ -242,18 +242,14 @@ KEYS = (
 
 
 @pytest.mark.parametrize("seed", range(6))
-def test_a_storm_of_hands(whole: tuple[Window, Hands], seed: int) -> None:
+def test_a_storm_of_hands(whole: tuple[Window, Hands], hands: Hands, seed: int) -> None:
     """Presses, moves, wheels, keys and drops in any order at places where something is."""
-    storm(whole[0], whole[1], random.Random(seed), 150)
+    storm(whole[0], hands, random.Random(seed), 150)
 
 
 def storm(window: Window, hands: Hands, chance: random.Random, count: int) -> None:
-    closer = QTimer()
-    closer.timeout.connect(_close_popup)
-    closer.start(0)
     for _ in range(count):
         act(window, hands, chance)
-    closer.stop()
     hands.key(Qt.Key.Key_Escape)
     for button in (LEFT, MIDDLE, RIGHT):
         hands.release((0, 0), button=button)
@@ -263,12 +259,6 @@ def storm(window: Window, hands: Hands, chance: random.Random, count: int) -> No
         hands.store.stack.undo()
     assert hands.store.plan == plan()
     as_planned(hands)
-
-
-def _close_popup() -> None:
-    popup = QApplication.activePopupWidget()
-    if popup is not None:
-        popup.close()
 
 
 def act(window: Window, hands: Hands, chance: random.Random) -> None:

@@ -12,7 +12,6 @@ from PySide6.QtWidgets import (
     QComboBox,
     QLabel,
     QLineEdit,
-    QPushButton,
     QWidget,
 )
 from pytestqt.qtbot import QtBot
@@ -104,7 +103,8 @@ def test_tab_goes_from_top_to_bottom(shown: Shown) -> None:
         assert QApplication.focusWidget() is control
     tops = [w.mapTo(shown.card, QPoint(0, 0)).y() for w in order]
     assert tops == sorted(tops)
-    assert len(order) == 10  # name, id, cable, length, end, its three fields, other end, note
+    # name, id, cable, length, four cuts, degrees, same phase, match, end, its three fields, other end, note
+    assert len(order) == 17
 
 
 def test_words_are_readable_on_their_ground() -> None:
@@ -171,8 +171,7 @@ def test_several_parts_in_short(shown: Shown) -> None:
     shown.select("match A", "match B", "pad")
     assert "3 parts selected" in shown.texts()
     assert "match A, match B, pad" in shown.texts()
-    (delete,) = [b for b in shown.card.findChildren(QPushButton) if b.isVisible()]
-    shown.qtbot.mouseClick(delete, Qt.MouseButton.LeftButton)
+    shown.qtbot.mouseClick(shown.control("Delete the selected parts"), Qt.MouseButton.LeftButton)
     assert not {"match A", "match B", "pad"} & {p.id for p in shown.store.plan.parts}
     assert shown.store.plan.mate(Port("A", 1)) == Port("T1", 2), "the chain heals"
     assert shown.store.selected == ()

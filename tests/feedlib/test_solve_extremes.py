@@ -7,7 +7,9 @@ import pytest
 
 from feedlib import SolveError, solve
 from feedlib.parts import Coax
+from feedlib.plan import Port
 from feedlib.topology import compile_plan
+from tests import oracle
 from tests.plans import Sketch, touchstone
 
 C_M_PER_S = 299_792_458.0
@@ -196,6 +198,38 @@ def test_one_frequency_and_ten_thousand(points):
     t = np.tan(2 * np.pi * f * 0.83 / C_M_PER_S)
     np.testing.assert_allclose(answer.port_impedance_ohm["c:1"], 93 * (50 + 93j * t) / (93 + 50j * t), rtol=1e-9)
     assert answer.harness_s.shape == (points, 2, 2)
+
+
+def test_ten_thousand_frequencies_of_many_parts():
+    """Too much to be held at a time; single frequencies, the mark and a channel against the oracle."""
+    top = {"mark_hz": 5.55e8, "channels": [{"name": "c", "hz": 7.77e8}]}
+    sketch = fed(Sketch(3e8, 2.7e9, 10_001, **top))
+    sketch.add("splitter", "H", form="branch_line", centre_hz=1e9)
+    sketch.add("tee", "ring", ports=6)
+    sketch.coax(0.31, 75, "loop", skin_db_per_100m=20)
+    sketch.join("radio:1", "H:1", "H:2", "ring:1", "ring:2", "loop:1", "loop:2", "ring:3", "H:3", "ring:4")
+    for n, port in enumerate(("H:4", "ring:5", "ring:6")):
+        sketch.add("tee", f"T{n}", ports=8)
+        sketch.join(port, f"T{n}:1")
+        for arm in range(2, 9):
+            leg = sketch.coax(0.05 * arm + 0.013 * n, 50 + 5 * arm, f"leg {n}{arm}", skin_db_per_100m=8)
+            sketch.antenna(complex(40 + arm, 10 * n - 10), f"A{n}{arm}")
+            sketch.join(f"T{n}:{arm}", f"{leg}:1", f"{leg}:2", f"A{n}{arm}:1")
+    plan = sketch.plan()
+    answer = solve(plan)
+    picked = np.array([0, 1, 17, 1234, 4999, 5000, 7777, 9999, 10_000])
+    for figures, at in ((answer, picked), (answer.mark, [0]), (answer.channels["c"], [0])):
+        expected = oracle.driven(plan, figures.frequency_hz[at])
+        scale_a = expected.scale_v[:, None] / 50
+        assert np.all(np.abs(figures.antenna_current_a[at] - expected.antenna_current_a) <= 1e-9 * scale_a)
+        np.testing.assert_allclose(figures.reflected_share[at], expected.reflection**2, atol=1e-9)
+        near = expected.near_to_far(Port("loop", 2))
+        z_ohm = expected.voltage_v[Port("loop", 2)] / near
+        np.testing.assert_allclose(figures.port_impedance_ohm["loop:2"][at], z_ohm, rtol=1e-7)
+        s, _ = oracle.harness_s(plan, figures.frequency_hz[at])
+        np.testing.assert_allclose(figures.harness_s[at], s, atol=1e-9)
+        loudest = np.abs(s[:, 1:, 1:] * ~np.eye(21, dtype=bool)).max(axis=(1, 2))
+        np.testing.assert_allclose(figures.isolation_db[at], -20 * np.log10(loudest), atol=1e-8)
 
 
 def test_marks_and_channels_are_solved_themselves():

@@ -100,15 +100,16 @@ def test_only_the_limits_that_are_set_are_judged():
     assert list(verdicts(sketch, isolation_db=1, return_loss_db=1)) == ["return_loss_db", "isolation_db"]
 
 
-def test_worst_is_at_the_edge_of_the_band_that_no_grid_point_hits():
-    """The sweep's points are 300, 400 and 500 MHz; the band runs from 396 to 410 MHz."""
-    sketch = detuned(start_hz=3.96e8, stop_hz=4.1e8, points=2, mark_hz=3.5e8)
+@pytest.mark.parametrize(("start_hz", "stop_hz", "worst_hz"), [(3.96e8, 4.1e8, 4.1e8), (3.9e8, 4.04e8, 3.9e8)])
+def test_worst_is_at_an_edge_of_the_band_that_no_grid_point_hits(start_hz, stop_hz, worst_hz):
+    """The sweep's points are 300, 400 and 500 MHz; the mark, at 350 MHz, is not in the band."""
+    sketch = detuned(start_hz=start_hz, stop_hz=stop_hz, points=2, mark_hz=3.5e8)
     sketch.top["sweep"] = {"start_hz": 3e8, "stop_hz": 5e8, "points": 3}
-    verdict = verdicts(sketch, return_loss_db=12)["return_loss_db"]
-    assert verdict.frequency_hz == 4.1e8
-    assert verdict.worst == pytest.approx(detuned_return_loss_db(4.1e8), rel=1e-12)
+    verdict = verdicts(sketch, return_loss_db=11)["return_loss_db"]
+    assert verdict.frequency_hz == worst_hz
+    assert verdict.worst == pytest.approx(detuned_return_loss_db(worst_hz), rel=1e-12)
     assert verdict.holds  # at 300, 350 and 500 MHz it would not
-    assert detuned_return_loss_db(3.5e8) < 12
+    assert detuned_return_loss_db(3.5e8) < 11
 
 
 def test_worst_is_at_a_grid_point_inside_the_band():
