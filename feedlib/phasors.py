@@ -15,11 +15,10 @@ from feedlib.conventions import Array
 
 def phase_from_middle_deg(figures: Figures) -> Array:
     """(F, N) arg(I) - target phase, from the middle of the smallest arc that holds them all; -180 to 180."""
-    current = figures.antenna_current_a
-    wanted_deg = [antenna.target.phase_deg for *_, antenna in figures._solved.antennas]
-    error_deg = np.where(current == 0, np.nan, np.degrees(np.angle(current)) - wanted_deg)
-    from_middle_deg: Array = np.mod(error_deg - arc_middle_deg(error_deg.T)[:, None] + 180.0, 360.0) - 180.0
-    return from_middle_deg
+    current = figures.antenna_current_a.T
+    wanted_deg = np.array([antenna.target.phase_deg for *_, antenna in figures._solved.antennas])
+    error_deg = np.where(current == 0, np.nan, np.degrees(np.angle(current)) - wanted_deg[:, None])
+    return _less_whole_turns_deg(error_deg - _middle_deg(error_deg)).T
 
 
 def amplitude_from_middle_db(figures: Figures) -> Array:
@@ -30,3 +29,23 @@ def amplitude_from_middle_db(figures: Figures) -> Array:
     largest, smallest = (pick.reduce(level_db, axis=-1, initial=np.nan) for pick in (np.fmax, np.fmin))
     from_middle_db: Array = level_db - (largest + smallest)[:, None] / 2
     return from_middle_db
+
+
+def _middle_deg(angle_deg: Array) -> Array:
+    """(F,) the middle of the smallest arc that holds all angles (N, F), but for whole turns.
+
+    Taken against the first antenna the common case, all within half a turn, needs no sorting.
+    """
+    if len(angle_deg):
+        against_deg = _less_whole_turns_deg(angle_deg - angle_deg[0])
+        low_deg, high_deg = against_deg.min(axis=0), against_deg.max(axis=0)
+        if (high_deg - low_deg < 180.0).all():
+            middle_deg: Array = angle_deg[0] + (low_deg + high_deg) / 2
+            return middle_deg
+    return arc_middle_deg(angle_deg)
+
+
+def _less_whole_turns_deg(angle_deg: Array) -> Array:
+    """The angles from -180 to 180."""
+    turned_deg: Array = angle_deg - 360.0 * np.round(angle_deg / 360.0)
+    return turned_deg

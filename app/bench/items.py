@@ -49,7 +49,7 @@ class PartItem(QGraphicsItem):
         reach = self.body
         for port in self.ports:
             reach = reach.united(QRectF(port.x() - GRAB, port.y() - GRAB, 2 * GRAB, 2 * GRAB))
-        half = max(120.0, reach.width() / 2 + 8)
+        half = max(140.0, self.body.width() / 2 + 60, reach.width() / 2 + 8)  # words at small sizes run wider
         self._bounds = QRectF(-half, reach.top() - 34, 2 * half, reach.height() + 34 + TEXT_GAP + 4 * TEXT_LINE)
 
     def port_at(self, number: int) -> QPointF:
@@ -80,7 +80,7 @@ class PartItem(QGraphicsItem):
         if self.selected:
             painter.setPen(pen(look.ink, 1.4))
             painter.setBrush(Qt.BrushStyle.NoBrush)
-            painter.drawRoundedRect(self._frame(), 8, 8)
+            painter.drawRoundedRect(self._frame(growth(painter)), 8, 8)
         painter.save()
         picture.paint(painter, shown)
         painter.restore()
@@ -98,11 +98,17 @@ class PartItem(QGraphicsItem):
         if self.trouble:
             self._paint_trouble(painter, look)
 
-    def _frame(self) -> QRectF:
+    def _frame(self, grown: float) -> QRectF:
         """What a selected part's frame holds: its shape and its words."""
-        words = 0.0 if self.shown.placed.part.KIND == "radio" else TEXT_GAP + TEXT_LINE
-        words += TEXT_LINE if PICTURES[self.shown.placed.part.KIND].detail(self.shown) else 0.0
-        return self.body.adjusted(-10, -12, 10, 12).united(self.body.adjusted(-10, 0, 10, words + 4))
+        shape = self.body.adjusted(-10, -12, 10, 12)
+        if self.shown.placed.part.KIND == "radio":
+            return shape
+        detail = PICTURES[self.shown.placed.part.KIND].detail(self.shown)
+        lines = [(self.shown.name, True), (f"✓ {detail}", False)] if detail else [(self.shown.name, True)]
+        width = max(QFontMetricsF(font("small", bold=bold)).horizontalAdvance(words) for words, bold in lines)
+        width = min(grown * width, max(230.0, self.body.width() + 90)) / 2 + 6
+        height = TEXT_GAP + grown * TEXT_LINE * len(lines) + 4
+        return shape.united(QRectF(-width, self.body.bottom(), 2 * width, height))
 
     def _paint_ports(self, painter: QPainter, look: Look) -> None:
         for number, port in enumerate(self.ports, start=1):

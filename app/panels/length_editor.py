@@ -69,7 +69,7 @@ class LengthEditor(TextEditor):
         self._notches = 0.0
         assert isinstance(self.line, LengthField)
         self.line.turned.connect(self._turned)
-        self.menu = QMenu(self)
+        self.menu = QMenu(self.line)  # a menu of anything else would end the writing in the line
         self.line.unit.clicked.connect(self._offer)
         units().changed.connect(self._unit_changed)
 

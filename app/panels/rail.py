@@ -212,13 +212,16 @@ def ends_hz(plan: Plan) -> tuple[float, float]:
 
 
 def stepped_hz(plan: Plan, steps: float) -> float:
-    """The frequency so many points of the grid from the mark; the first step goes to the next point that is there."""
-    grid_hz, mark_hz = plan.grid_hz(), plan.band.marked_hz
+    """The frequency so many stops from the mark; the first step goes to the next one that is there.
+
+    The stops are the points of the grid and the channels.
+    """
+    stops_hz, mark_hz = np.union1d(plan.grid_hz(), [c.hz for c in plan.channels]), plan.band.marked_hz
     if steps > 0:
-        start = int(np.searchsorted(grid_hz, mark_hz, side="right")) - 1
+        start = int(np.searchsorted(stops_hz, mark_hz, side="right")) - 1
     else:
-        start = int(np.searchsorted(grid_hz, mark_hz, side="left"))
-    return float(grid_hz[int(min(max(start + steps, 0), len(grid_hz) - 1))])
+        start = int(np.searchsorted(stops_hz, mark_hz, side="left"))
+    return float(stops_hz[int(min(max(start + steps, 0), len(stops_hz) - 1))])
 
 
 def channels_text(channels: list[Channel]) -> str:

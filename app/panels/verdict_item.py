@@ -78,7 +78,6 @@ class VerdictItem(QAbstractButton):
             super().keyPressEvent(event)
 
     def mouseDoubleClickEvent(self, event: QMouseEvent) -> None:
-        # Not passed on: it would count as a second click.
         if event.button() == Qt.MouseButton.LeftButton:
             self.limit_asked.emit()
 

@@ -153,6 +153,7 @@ class VerdictStrip(QWidget):
         field.entered.connect(self._limit_entered)
         field.left.connect(self._end_field)
         field.fill(self._store.plan)
+        QWidget.setTabOrder(item, field.editor.line)
         field.show()
         self._place_field()
         field.take_hold()

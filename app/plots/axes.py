@@ -19,15 +19,17 @@ from PySide6.QtGui import QFontMetrics
 
 from app.look import Look, blend, font
 from app.plots import ink
+from app.plots.bundle import Bundle
 from app.plots.canvas import DPI, Pixel
+from app.plots.held import Held
 from app.plots.placing import distances, pushed_apart
 from app.plots.scale import Range, frequency_ticks, pointed_hz, ticks
-from app.plots.strand import Strand
+from app.plots.tag import Tag
 from feedlib import Plan
 from feedlib.conventions import Array
 
 LEFT_PX, TOP_PX, RIGHT_PX, BOTTOM_PX = 46.0, 10.0, 30.0, 28.0
-NAME_AWAY_PX, NAME_GAP_PX, NEAR_PX = 9.0, 15.0, 6.0
+NAME_AWAY_PX, NAME_GAP_PX, NOTE_AWAY_PX, NEAR_PX = 9.0, 15.0, 6.0, 6.0
 SLIVER = 0.01
 """Share of the axis that a band of one frequency is drawn with."""
 
@@ -70,17 +72,22 @@ class Ground:
         return self.swept_hz if high > low else Range(low * 0.999, high * 1.001)
 
 
-def names_px(curves: Sequence[Curve]) -> int:
-    """The width (pixels at 100 %) of the longest name, in a letter much like that of the plot."""
+def names_px(names: Iterable[str]) -> int:
+    """The width (pixels at 100 %) of the longest name."""
     metrics = QFontMetrics(font("small"))
-    return max((metrics.horizontalAdvance(curve.name) for curve in curves), default=0)
+    return max((metrics.horizontalAdvance(name) for name in names), default=0)
+
+
+def swept_hz(plan: Plan) -> Range:
+    """The ends of what is solved."""
+    wide = plan.sweep or plan.band
+    return Range(wide.start_hz, wide.stop_hz)
 
 
 def ground_of(plan: Plan, allowed: Range, shown: Range, *, names_px: int) -> Ground:
     """The ground for a plan."""
-    wide = plan.sweep or plan.band
     band = Range(plan.band.start_hz, plan.band.stop_hz)
-    return Ground(Range(wide.start_hz, wide.stop_hz), band, allowed, shown, names_px)
+    return Ground(swept_hz(plan), band, allowed, shown, names_px)
 
 
 class FrequencyAxes:
@@ -91,7 +98,7 @@ class FrequencyAxes:
         self.axes = figure.add_axes((0.1, 0.1, 0.8, 0.8))
         self.axes.set_axisbelow(True)
         self.axes.spines[:].set_visible(False)
-        self.axes.tick_params(length=0, labelsize=ink.TEXT_POINTS, pad=6)
+        self.axes.tick_params(length=0, labelsize=ink.TEXT_POINTS, labelfontfamily=ink.families(), pad=6)
         self._figure = figure
         self.wash = Rectangle((0, 0), 0, 0, linewidth=0, zorder=0.1)
         self.no_go = [Rectangle((0, 0), 0, 0, linewidth=0, zorder=0.2, hatch="////") for _ in range(2)]
@@ -104,9 +111,11 @@ class FrequencyAxes:
         )
         self._leaders = Line2D([], [], animated=True, linewidth=ink.THIN_POINTS, transform=IdentityTransform())
         figure.add_artist(self._leaders)
-        self.strands: list[Strand] = []
+        self.held, self.bundle = Held(figure, self.axes), Bundle(self.axes)
+        self.tags: list[Tag] = []
         self.curves: tuple[Curve, ...] = ()
         self.grid_hz: Array = np.zeros(0)
+        self._tagged: list[Curve] = []
         self._ground: Ground | None = None
         self._names_at: dict[str | None, float] = {}
 
@@ -150,22 +159,28 @@ class FrequencyAxes:
         """Show these curves; grid_hz : (F,) the frequencies of their values."""
         self.curves, self.grid_hz = tuple(curves), grid_hz
         self.mark.set_data([mark_hz, mark_hz], [0, 1])
-        while len(self.strands) < len(curves):
-            self.strands.append(Strand(self._figure, self.axes))
-        for strand, curve in zip(self.strands, curves, strict=False):
-            strand.show(grid_hz, curve.values, (mark_hz, curve.at_mark))
-            strand.say(curve.name, curve.note)
-            strand.wear(curve.colour, self._look, stands_out=curve.stands_out)
+        self.bundle.show(
+            grid_hz,
+            np.array([curve.values for curve in curves]),
+            [(curve.colour, ink.STANDS_OUT_POINTS if curve.stands_out else ink.LINE_POINTS) for curve in curves],
+        )
+        self._tagged = [curve for curve in curves if curve.labelled]
+        while len(self.tags) < len(self._tagged):
+            self.tags.append(Tag(self._figure, self.axes))
+        for tag, curve in zip(self.tags, self._tagged, strict=False):
+            tag.show((mark_hz, curve.at_mark), curve.name, curve.note)
+            tag.wear(curve.colour, self._look)
 
     def arrange(self, width_px: float, height_px: float) -> None:
         """Place the axes in a figure of that size and choose ticks that have room."""
         assert self._ground is not None
         names = self._ground.names_px
-        right_px = max(RIGHT_PX, names * 1.1 + NAME_AWAY_PX + 4) if names else RIGHT_PX
+        right_px = max(RIGHT_PX, names + NAME_AWAY_PX + 4) if names else RIGHT_PX
         across_px, up_px = max(width_px - LEFT_PX - right_px, 10.0), max(height_px - TOP_PX - BOTTOM_PX, 10.0)
         self.axes.set_position((LEFT_PX / width_px, BOTTOM_PX / height_px, across_px / width_px, up_px / height_px))
         self.axes.set_xticks(*frequency_ticks(self._ground.frequencies_hz, across_px))
         self.axes.set_yticks(*ticks(self._ground.shown, max(1, int(up_px / 34))))
+        self.held.place_word(self.axes.bbox)
 
     def artists(self, pointer: Pixel | None) -> Iterable[Artist]:
         """What moves, in the order in which it is drawn."""
@@ -174,15 +189,14 @@ class FrequencyAxes:
             self._hair.set_data([self.grid_hz[at]] * 2, [0, 1])
             yield self._hair
         yield self.mark
-        strands = sorted(zip(self.strands, self.curves, strict=False), key=lambda pair: pair[1].stands_out)
-        for strand, curve in strands:
-            yield strand.line
-            if curve.labelled:
-                yield strand.dot
+        yield from self.bundle.lines
+        tagged = list(zip(self.tags, self._tagged, strict=False))
+        for tag, _ in sorted(tagged, key=lambda pair: pair[1].stands_out):
+            yield tag.dot
         yield from self._placed_names()
-        for strand, curve in strands:
+        for tag, curve in tagged:
             if curve.note:
-                yield from self._placed_note(strand, curve)
+                yield from self._placed_note(tag, curve)
 
     def index_at(self, at: Pixel) -> int | None:
         """The solved frequency nearest to a point; None outside the axes."""
@@ -225,9 +239,9 @@ class FrequencyAxes:
         """The names at the ends of their curves, pushed apart, with leaders where they had to move."""
         box, scale = self.axes.bbox, self._scale
         named = [
-            (strand.name, curve, np.flatnonzero(np.isfinite(curve.values))[-1:])
-            for strand, curve in zip(self.strands, self.curves, strict=False)
-            if curve.labelled and curve.name
+            (tag.name, curve, np.flatnonzero(np.isfinite(curve.values))[-1:])
+            for tag, curve in zip(self.tags, self._tagged, strict=False)
+            if curve.name
         ]
         named = [entry for entry in named if entry[2].size]
         ends = [float(np.clip(self._y_px(curve.values[last]), box.y0, box.y1)[0]) for _, curve, last in named]
@@ -243,20 +257,13 @@ class FrequencyAxes:
             text.set_position((box.x1 + NAME_AWAY_PX * scale, place))
             yield text
 
-    def _placed_note(self, strand: Strand, curve: Curve) -> Iterable[Artist]:
+    def _placed_note(self, tag: Tag, curve: Curve) -> Iterable[Artist]:
         """The note at the corner of the dot where it stays inside the axes and off the curve, if there is one."""
-        box, note, away = self.axes.bbox, strand.note, 6 * self._scale
-        x = float(self._x_px(np.asarray(strand.dot.get_xdata()))[0])
+        box, away = self.axes.bbox, NOTE_AWAY_PX * self._scale
+        x = float(self._x_px(np.asarray(tag.dot.get_xdata()))[0])
         y = float(self._y_px(np.array([curve.at_mark]))[0])
         if not box.contains(x, y):
             return
         along = np.column_stack([self._x_px(self.grid_hz), self._y_px(curve.values)])
-        for side, level in ((1, 1), (-1, 1), (1, -1), (-1, -1)):
-            note.set(ha="left" if side > 0 else "right", va="bottom" if level > 0 else "top")
-            note.set_position((x + side * away, y + level * away / 2))
-            extent = note.get_window_extent()
-            if box.containsx(extent.x0) and box.containsx(extent.x1) and box.containsy(extent.y1):
-                inside = (along > [extent.x0, extent.y0]) & (along < [extent.x1, extent.y1])
-                if not inside.all(axis=1).any():
-                    break
-        yield note
+        tag.note.stand_beside((x, y), away, ((1, 1), (-1, 1), (1, -1), (-1, -1)), within=box, off=along)
+        yield tag.note

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+from collections.abc import Mapping
 
 import numpy as np
 
@@ -14,7 +15,7 @@ from app.plots.scale import Range
 from app.store import Store
 from feedlib import Answer, Figures, Plan
 from feedlib.conventions import Array
-from feedlib.parts import Radio
+from feedlib.parts import Antenna, Radio
 from feedlib.phasors import amplitude_from_middle_db, phase_from_middle_deg
 
 PHASE, AMPLITUDE = "phase", "amplitude"
@@ -33,8 +34,16 @@ class CurrentsPlot(FrequencyPlot):
     def unit(self) -> str:
         return "° from the middle" if self.word == PHASE else "dB from the middle"
 
+    def colours(self, plan: Plan) -> Mapping[str | None, str]:
+        antennas = (placed.id for placed in plan.parts if isinstance(placed.part, Antenna))
+        return {part_id: self.look.curve(number) for number, part_id in enumerate(antennas)}
+
+    def drawn(self, figures: Figures) -> Mapping[str | None, Array]:
+        return dict(zip(figures.antenna_ids, self._figure(figures).T, strict=True))
+
     def curves(self, answer: Answer) -> tuple[Curve, ...]:
         self._values, at_mark = self._figure(answer), self._figure(answer.mark)[0]
+        colours = self.colours(answer.plan)
         stands_out = self._standing_out(answer)
         names = self.names()
         labelled = frozenset(
@@ -44,7 +53,7 @@ class CurrentsPlot(FrequencyPlot):
             Curve(
                 part_id,
                 short_name(names.get(part_id, part_id)),
-                self.look.curve(number),
+                colours[part_id],
                 self._values[:, number],
                 float(at_mark[number]),
                 labelled=part_id in labelled,

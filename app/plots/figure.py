@@ -10,7 +10,7 @@ from PySide6.QtWidgets import QHBoxLayout, QLabel, QSizePolicy, QVBoxLayout, QWi
 
 from app.look import Look, font, palette_of
 from app.plots.canvas import Canvas, Pixel
-from app.plots.ink import free_text
+from app.plots.letters import Letters
 from app.plots.readout import Readout
 from app.plots.words import Corners, Words
 from app.store import Store
@@ -38,8 +38,8 @@ class Plot(QWidget):
         self.canvas = Canvas(self)
         self.canvas.setAccessibleName(title)
         self.figure = self.canvas.figure
-        self.message = free_text(self.figure)
-        self.message.set(ha="center", va="center")
+        self.message = Letters(self.figure)
+        self.message.set_anchor(0.5, 0.5)
         self.readout = Readout(self.figure, look)
         self._settle = QTimer(self)
         self._settle.setSingleShot(True)
@@ -192,6 +192,7 @@ class Plot(QWidget):
 
     def _listen(self) -> None:
         self.store.answer_changed.connect(self.follow)
+        self.store.held_changed.connect(self.follow)
         self.store.plan_changed.connect(self._renamed)
         self.store.selection_changed.connect(self.follow)
         self.store.hover_changed.connect(self.follow)
@@ -210,7 +211,7 @@ class Plot(QWidget):
         self.note.setPalette(palette)
         self.figure.set_facecolor(self.look.paper)
         self.message.set_color(self.look.soft)
-        self.message.set_bbox({"facecolor": self.look.paper, "edgecolor": "none"})
+        self.message.set_card(self.look.paper, self.look.paper)
         self.readout.recolour(self.look)
         self.recolour()
         self._behind = True

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+from collections.abc import Mapping
 
 import numpy as np
 
@@ -29,12 +30,17 @@ class MatchPlot(FrequencyPlot):
     def unit(self) -> str:
         return "dB at the radio" if self.word == RETURN_LOSS else "at the radio"
 
+    def colours(self, plan: Plan) -> Mapping[str | None, str]:
+        return {None: self.look.impedance[1]}
+
+    def drawn(self, figures: Figures) -> Mapping[str | None, Array]:
+        return {None: np.clip(self._figure(figures), -HIGHEST_DB, self._highest)}
+
     def curves(self, answer: Answer) -> tuple[Curve, ...]:
         self._values = self._figure(answer)
-        at_mark = self._figure(answer.mark)
-        drawn, dot = (np.clip(values, -HIGHEST_DB, self._highest) for values in (self._values, at_mark))
-        note = self._text(float(at_mark[0])).removesuffix(" dB")
-        return (Curve(None, "", self.look.impedance[1], drawn, float(dot[0]), note),)
+        note = self._text(float(self._figure(answer.mark)[0])).removesuffix(" dB")
+        colour, dot = self.colours(answer.plan)[None], self.drawn(answer.mark)[None]
+        return (Curve(None, "", colour, self.drawn(answer)[None], float(dot[0]), note),)
 
     def allowed(self, plan: Plan) -> Range:
         limit_db = plan.limits.return_loss_db
@@ -51,7 +57,11 @@ class MatchPlot(FrequencyPlot):
         return Range(values.min(initial=base), base + 1.04 * (highest - base)), base
 
     def value_texts(self, at: int) -> list[str]:
-        return [self._text(float(self._values[at]))]
+        texts, held, frequency_hz = [self._text(float(self._values[at]))], self.store.held, self.axes.grid_hz[at]
+        if held is not None and held.frequency_hz[0] <= frequency_hz <= held.frequency_hz[-1]:
+            nearest = int(np.argmin(np.abs(held.frequency_hz - frequency_hz)))
+            texts.append(f"held {self._text(float(self._figure(held)[nearest]))}")
+        return texts
 
     @property
     def _highest(self) -> float:

@@ -9,7 +9,7 @@ from matplotlib.figure import Figure
 
 from app.look import Look
 from app.plots.canvas import Pixel
-from app.plots.ink import free_text
+from app.plots.letters import Letters
 
 AWAY_PX = 12.0
 
@@ -19,14 +19,13 @@ class Readout:
 
     def __init__(self, figure: Figure, look: Look) -> None:
         self._figure = figure
-        self.text = free_text(figure)
-        self.text.set(va="bottom", linespacing=1.35)
+        self.text = Letters(figure)
         self.recolour(look)
 
     def recolour(self, look: Look) -> None:
         """Wear another look."""
         self.text.set_color(look.ink)
-        self.text.set_bbox({"facecolor": look.card, "edgecolor": look.hairline, "boxstyle": "round,pad=0.35"})
+        self.text.set_card(look.card, look.hairline)
 
     def beside(self, at: Pixel, lines: Sequence[str], scale: float) -> Artist:
         """The text, placed beside a point; at : device pixels, scale : device pixels in a pixel at 100 %."""

@@ -14,15 +14,17 @@ from matplotlib.patches import Polygon
 from app.editing.wording import format_frequency, format_impedance
 from app.look import Look, blend
 from app.plots import ink
+from app.plots.bundle import Bundle
 from app.plots.canvas import Pixel
 from app.plots.figure import Plot
+from app.plots.held import Held
 from app.plots.placing import distances, pushed_apart
 from app.plots.smith_grid import REACTANCES, RESISTANCES, limit_circle, reactance_arc, reflection, resistance_circle
-from app.plots.strand import Strand
+from app.plots.tag import Tag
 from app.store import Store
 from feedlib import Answer, Plan
 from feedlib.conventions import Array, ComplexArray
-from feedlib.parts import Radio
+from feedlib.parts import Antenna, Radio
 
 REACH = 1.03
 MARGIN_PX, NEAR_PX, READ_PX, NAME_AWAY_PX, NAME_GAP_PX = 6.0, 6.0, 16.0, 9.0, 15.0
@@ -31,10 +33,11 @@ MOST_SELECTED = 4
 
 @dataclass(frozen=True, slots=True)
 class Trace:
-    """What one curve shows: the impedance over the grid (F,) and at the mark, and both as reflection."""
+    """What one curve shows: the impedance over the grid (F,), and as reflection over the grid and at the mark."""
 
     part_id: str
     name: str
+    colour: str
     impedance_ohm: ComplexArray
     gamma: ComplexArray
     at_mark: complex
@@ -59,8 +62,10 @@ class SmithPlot(Plot):
         self.axes.add_patch(self.limit)
         self._web = self.axes.add_line(Line2D(threads.real, threads.imag, linewidth=ink.THIN_POINTS, zorder=0.5))
         self._rim = self.axes.add_line(Line2D(rim.real, rim.imag, linewidth=ink.MARK_POINTS, zorder=0.6))
-        self.strands: list[Strand] = []
+        self.held, self.bundle = Held(self.figure, self.axes), Bundle(self.axes)
+        self.tags: list[Tag] = []
         self.traces: tuple[Trace, ...] = ()
+        self._held: tuple[object, ...] | None = None
         self._grid_hz: Array = np.zeros(0)
         self._ground: tuple[float | complex | None, ...] = ()
 
@@ -74,32 +79,32 @@ class SmithPlot(Plot):
         side_px = max(min(width_px, height_px) - 2 * MARGIN_PX, 10.0)
         across, up = side_px / width_px, side_px / height_px
         self.axes.set_position(((1 - across) / 2, (1 - up) / 2, across, up))
+        off = NAME_GAP_PX / 2 * self.canvas.scale
+        names = [tag.name.get_window_extent().padded(off) for tag in self._placed_tags()]
+        self.held.place_word(self.figure.bbox, names)
 
     def fill(self, plan: Plan, answer: Answer | None, *, settled: bool) -> bool:
         self.note.setText(f"{plan.reference_ohm:g} Ω in the middle")
-        self.traces = () if answer is None else tuple(self._traces(answer))
+        looked_at = (*self.store.selected[:MOST_SELECTED], self.store.hovered)
+        self.traces = () if answer is None else tuple(self._traces(answer, looked_at, plan))
         self._grid_hz = np.zeros(0) if answer is None else answer.frequency_hz
-        while len(self.strands) < len(self.traces):
-            self.strands.append(Strand(self.figure, self.axes))
-        for strand, trace in zip(self.strands, self.traces, strict=False):
-            strand.show(trace.gamma.real, trace.gamma.imag, (trace.at_mark.real, trace.at_mark.imag))
-            strand.say(trace.name, "")
-            strand.wear(self._colour(plan, trace.part_id), self.look, stands_out=self._stands_out(trace.part_id))
-        return self._set_ground(plan)
+        gamma = np.array([trace.gamma for trace in self.traces])
+        self.bundle.show(gamma.real, gamma.imag, [(trace.colour, self._width(trace)) for trace in self.traces])
+        while len(self.tags) < len(self.traces):
+            self.tags.append(Tag(self.figure, self.axes))
+        for tag, trace in zip(self.tags, self.traces, strict=False):
+            tag.show((trace.at_mark.real, trace.at_mark.imag), trace.name)
+            tag.wear(trace.colour, self.look)
+        others_held = self._hold(plan)
+        return self._set_ground(plan) or others_held
 
     def artists(self) -> Iterable[Artist]:
-        strands = self.strands[: len(self.traces)]
-        for strand in strands:
-            yield strand.line
-            yield strand.dot
-        scale = self.canvas.scale
-        dots = [self._px(np.array([trace.at_mark])) for trace in self.traces]
-        seen = [n for n, (x, _) in enumerate(dots) if np.isfinite(x[0])]
-        wanted = [float(dots[n][1][0]) for n in seen]
-        for n, y in zip(seen, pushed_apart(wanted, NAME_GAP_PX * scale, 0.0, self.figure.bbox.height), strict=True):
-            x, name = float(dots[n][0][0]), strands[n].name
-            name.set_position((x + NAME_AWAY_PX * scale, y))
-            yield name
+        yield from self.bundle.lines
+        tags = self._placed_tags()
+        for tag in tags:
+            yield tag.dot
+        for tag in tags:
+            yield tag.name
 
     def part_at(self, at: Pixel) -> str | None:
         near = [distances(*self._px(trace.gamma[None]), at)[0] for trace in self.traces]
@@ -116,28 +121,52 @@ class SmithPlot(Plot):
         frequency = format_frequency(float(self._grid_hz[index]))
         return [f"{trace.name}  {frequency}", format_impedance(complex(trace.impedance_ohm[index]))]
 
-    def _traces(self, answer: Answer) -> Iterable[Trace]:
-        radio = answer.harness_ports[0]
-        names = self.names()
+    def _placed_tags(self) -> list[Tag]:
+        """The tags of what is seen at the mark, their names beside the dots and pushed apart."""
+        scale = self.canvas.scale
+        dots = [self._px(np.array([trace.at_mark])) for trace in self.traces]
+        seen = [(tag, float(x[0]), float(y[0])) for tag, (x, y) in zip(self.tags, dots, strict=False) if np.isfinite(x)]
+        places = pushed_apart([y for *_, y in seen], NAME_GAP_PX * scale, 0.0, self.figure.bbox.height)
+        for (tag, x, _), y in zip(seen, places, strict=True):
+            tag.name.set_position((x + NAME_AWAY_PX * scale, y))
+        return [tag for tag, *_ in seen]
+
+    def _traces(self, answer: Answer, looked_at: Iterable[str | None], plan: Plan) -> Iterable[Trace]:
+        """The radio's and those of the parts that are looked at and that the answer knows, as `plan` has them drawn."""
+        radio, names = answer.harness_ports[0], self.names()
         ports = {radio.rpartition(":")[0]: radio}
         parts = {placed.id: placed.part.ports for placed in answer.plan.parts}
-        for part_id in (*self.store.selected[:MOST_SELECTED], self.store.hovered):
+        for part_id in looked_at:
             if part_id in parts:
                 ports.setdefault(part_id, entry_port(answer, part_id, parts[part_id]))
         for part_id, port in ports.items():
             impedance, at_mark = answer.port_impedance_ohm[port], answer.mark.port_impedance_ohm[port]
-            gamma, dot = (reflection(z, answer.plan.reference_ohm) for z in (impedance, at_mark))
-            yield Trace(part_id, ink.short_name(names.get(part_id, part_id)), impedance, gamma, complex(dot[0]))
+            gamma, dot = (reflection(z, plan.reference_ohm) for z in (impedance, at_mark))
+            name = ink.short_name(names.get(part_id, part_id))
+            colour = self.look.impedance[1] if port == radio else self._colour(plan, part_id)
+            yield Trace(part_id, name, colour, impedance, gamma, complex(dot[0]))
 
-    def _stands_out(self, part_id: str) -> bool:
-        return part_id in self.store.selected or part_id == self.store.hovered
+    def _width(self, trace: Trace) -> float:
+        looked_at = trace.part_id in self.store.selected or trace.part_id == self.store.hovered
+        return ink.STANDS_OUT_POINTS if looked_at else ink.LINE_POINTS
 
     def _colour(self, plan: Plan, part_id: str) -> str:
-        """The radio's own, an antenna's as everywhere, ink for what else is looked at."""
-        antennas = [placed.id for placed in plan.parts if placed.part.KIND == "antenna"]
-        if part_id in antennas:
-            return self.look.curve(antennas.index(part_id))
-        return self.look.impedance[1] if isinstance(plan.placed(part_id).part, Radio) else self.look.ink
+        """An antenna's as everywhere, ink for what else is looked at."""
+        antennas = [placed.id for placed in plan.parts if isinstance(placed.part, Antenna)]
+        return self.look.curve(antennas.index(part_id)) if part_id in antennas else self.look.ink
+
+    def _hold(self, plan: Plan) -> bool:
+        """Show the held answer at the radio and at the selected parts; whether that is other than before."""
+        held, selected = self.store.held, self.store.selected[:MOST_SELECTED]
+        colours = tuple(self._colour(plan, part_id) for part_id in selected)
+        shown = None if held is None else (held, selected, colours, plan.reference_ohm, self.look)
+        if shown == self._held:
+            return False
+        self._held = shown
+        traces = () if held is None else tuple(self._traces(held, selected, plan))
+        gamma = np.array([trace.gamma for trace in traces]).reshape(len(traces), -1 if traces else 0)
+        self.held.show(gamma.real, gamma.imag, [trace.colour for trace in traces], self.look)
+        return True
 
     def _set_ground(self, plan: Plan) -> bool:
         limit_db, reference_ohm = plan.limits.return_loss_db, plan.reference_ohm

@@ -28,20 +28,20 @@ def whole(qtbot: QtBot) -> tuple[Window, Hands]:
 
 @pytest.fixture
 def hands(whole: tuple[Window, Hands]) -> Iterator[Hands]:
-    """Hands on the window's bench that wave every menu away; afterwards nothing is left of what they began."""
+    """Hands on the window's bench that wave every menu and question away; afterwards nothing is left of what they began."""
     made = whole[1]
     closer = QTimer()
-    closer.timeout.connect(_close_popup)
+    closer.timeout.connect(_wave_away)
     closer.start(0)
     yield made
     closer.stop()
     as_planned(made)
 
 
-def _close_popup() -> None:
-    popup = QApplication.activePopupWidget()
-    if popup is not None:
-        popup.close()
+def _wave_away() -> None:
+    asked = QApplication.activePopupWidget() or QApplication.activeModalWidget()
+    if asked is not None:
+        asked.close()
 
 
 def as_planned(hands: Hands) -> None:

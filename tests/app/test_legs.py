@@ -41,15 +41,15 @@ def coax(plan: Plan, part_id: str) -> Coax:
 def add_leg(sketch: Sketch, at: str, name: str, y: float, length_m: float = 0.1) -> None:
     """A match and a tail with an antenna, in a row."""
     sketch.coax(length_m, 75, part_id=f"match {name}", at=[300, y])
-    sketch.coax(0.2, part_id=f"tail {name}", at=[500, y])
-    sketch.antenna(part_id=name, at=[700, y])
+    sketch.coax(0.2, part_id=f"tail {name}", at=[560, y])
+    sketch.antenna(part_id=name, at=[760, y])
     sketch.join(at, f"match {name}:1", f"match {name}:2", f"tail {name}:1", f"tail {name}:2", f"{name}:1")
 
 
 def pair(ports: int = 3, **tee: Any) -> Sketch:
     """radio - feeder - T1 with the legs A (above) and B."""
     sketch = Sketch()
-    sketch.add("radio", "radio", at=[-300, 0])
+    sketch.add("radio", "radio", at=[-420, 0])
     sketch.coax(3.0, part_id="feeder", at=[-100, 0])
     sketch.add("tee", "T1", ports=ports, at=[100, 0], **tee)
     sketch.join("radio:1", "feeder:1", "feeder:2", "T1:1")
@@ -97,8 +97,8 @@ def ring() -> Plan:
 @pytest.mark.parametrize(
     ("start", "keys", "end"),
     [
-        ("radio", "right right right right right right", "A"),
-        ("A", "left left left left left left", "radio"),
+        ("radio", "right right right right right", "A"),
+        ("A", "left left left left left", "radio"),
         ("radio", "left", None),
         ("A", "right", None),
         ("A", "down", "B"),
@@ -131,7 +131,7 @@ def test_walking_leads_from_the_radio_everywhere_and_back(plan: Plan, data: st.D
     at = data.draw(st.sampled_from(tree.order))
     steps = 0
     while (nearer := neighbour(plan, at, "left")) is not None:
-        assert plan.joins and {at, nearer} in [{a.part, b.part} for a, b in plan.joins]
+        assert {at, nearer} in [{a.part, b.part} for a, b in plan.joins]
         at, steps = nearer, steps + 1
     assert at == tree.root
     assert steps < len(tree.order)
@@ -229,7 +229,7 @@ def test_three_equal_legs_share_the_power() -> None:
 def test_the_copy_stands_below_all_in_its_way() -> None:
     for chosen in ("A", "B"):
         after, new = same_leg_again(pair().plan(), [chosen])
-        assert [after.placed(i).at for i in new] == [(300, 216), (500, 216), (700, 216)]
+        assert [after.placed(i).at for i in new] == [(300, 216), (560, 216), (760, 216)]
         assert overlapping(after) == []
 
 
@@ -330,8 +330,9 @@ def test_the_same_leg_again_doubles_a_branch_and_changes_nothing_else(plan: Plan
     except PlanError:
         return
     assert parse_plan(format_plan(after).encode()) == after
-    head = next(i for i in trees_of(after)[0].order + [p.id for p in plan.parts] if i in new)
-    assert set(branch_of(after, head)) <= set(new)
+    (hung,) = ({a, b} for a, b in after.joins if (a.part in new) != (b.part in new))
+    (head,) = (p.part for p in hung if p.part in new)
+    assert set(branch_of(after, head)) == set(new)
     kinds = [p.part.KIND for p in plan.parts]
     assert [p.part.KIND for p in after.parts][: len(kinds)] == kinds
     assert set(plan.joins) <= set(after.joins)
@@ -355,7 +356,7 @@ def test_copied_and_pasted_into_another_plan() -> None:
     xs, ys = zip(*(p.at for p in other.parts), strict=True)
     assert (min(xs) + max(xs)) / 2 == pytest.approx(1000, abs=6)
     assert (min(ys) + max(ys)) / 2 == pytest.approx(500, abs=6)
-    assert max(xs) - min(xs) == 600
+    assert max(xs) - min(xs) == 660
     assert other.band.start_hz == 433e6
 
 
@@ -402,9 +403,9 @@ def test_cables_of_one_name_and_other_figures() -> None:
     after, _ = pasted(there, text, (0, 0))
     assert coax(after, "match A").cable == "match A 3"
     assert after.cables == {"match A": thin, "match A 2": thin, "match A 3": plan.cables["match A"]}
-    same, _ = pasted(after, text, (0, 0))
-    assert same.cables == after.cables
-    assert coax(same, "match B").cable == "match A 3" if "match B" in [p.id for p in same.parts] else True
+    again, new = pasted(after, text, (0, 0))
+    assert again.cables == after.cables
+    assert coax(again, new[0]).cable == "match A 3"
 
 
 def test_two_cables_never_end_up_as_one() -> None:
@@ -449,7 +450,7 @@ def test_a_damaged_copy_says_what_is_wrong() -> None:
     text = copied_text(pair().plan(), ["tail A"]).replace('"length_m": 0.2', '"length_m": -0.2')
     with pytest.raises(PlanError, match=r'part "tail A", length_m: wants'):
         pasted(pair().plan(), text, (0, 0))
-    with pytest.raises(PlanError, match="version 99"):
+    with pytest.raises(PlanError, match="version"):
         pasted(pair().plan(), copied_text(pair().plan(), ["A"]).replace('"version": 1', '"version": 99'), (0, 0))
 
 

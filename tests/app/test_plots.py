@@ -3,6 +3,7 @@
 import os
 import subprocess
 import sys
+from functools import partial
 
 os.environ.setdefault("QT_QPA_PLATFORM", "offscreen")
 
@@ -15,86 +16,30 @@ from PySide6.QtWidgets import QApplication
 from app.editing import edits
 from app.look import DARK, LIGHT
 from app.plots.currents import CurrentsPlot
-from app.plots.figure import Plot
 from app.plots.match import MatchPlot
 from app.plots.smith import SmithPlot
-from app.store import Store
-from feedlib.plan import Limits, Plan
+from feedlib.plan import Limits
+from tests.app.plot_screen import (
+    alone,
+    at_reflection,
+    at_value,
+    click,
+    drawn,
+    line_of,
+    on_a_tee,
+    on_surface,
+    painted,
+    rows,
+    shown,
+    widths,
+)
 from tests.plans import Sketch, turned
-
-BAND = {"start_hz": 860e6, "stop_hz": 870e6, "points": 101}
-
-
-def on_a_tee(*impedances: complex, limits: dict[str, float] | None = None) -> Plan:
-    """Antennas A, B, C ... side by side on one T joint, each at the end of a leg; currents are V/Z without a length."""
-    sketch = Sketch(**BAND, mark_hz=868e6, limits=limits or {})
-    sketch.add("radio", "radio")
-    sketch.add("tee", "T1", ports=max(3, len(impedances) + 1))
-    sketch.join("radio:1", "T1:1")
-    for number, z_ohm in enumerate(impedances):
-        letter = chr(ord("A") + number)
-        antenna, leg = sketch.antenna(z_ohm, letter), sketch.coax(0.0, part_id=f"leg {letter}")
-        sketch.join(f"T1:{number + 2}", f"{leg}:1", f"{leg}:2", f"{antenna}:1")
-    return sketch.plan()
-
-
-def alone(z_ohm: complex, limits: dict[str, float] | None = None, sweep: bool = False) -> Plan:
-    """One antenna on the radio."""
-    wide = {"sweep": {"start_hz": 800e6, "stop_hz": 900e6, "points": 201}} if sweep else {}
-    sketch = Sketch(**BAND, mark_hz=868e6, limits=limits or {}, **wide)
-    sketch.join(f"{sketch.add('radio', 'radio')}:1", f"{sketch.antenna(z_ohm, 'A')}:1")
-    return sketch.plan()
 
 
 @pytest.fixture
 def show(qtbot):
     """Show a plot of a kind for a plan."""
-
-    def shown(kind, plan, look=LIGHT, size=(400, 300)):
-        widget = kind(Store(plan), look)
-        qtbot.addWidget(widget)
-        widget.resize(*size)
-        widget.show()
-        qtbot.waitExposed(widget)
-        painted(widget)
-        return widget
-
-    return shown
-
-
-def painted(widget) -> None:
-    """Let waiting events and paint events happen."""
-    QApplication.processEvents()
-    widget.grab()
-
-
-def on_surface(plot: Plot, x: float, y: float) -> QPoint:
-    """Where a place in device pixels, y upwards, is on the surface."""
-    return QPoint(round(x / plot.canvas.scale), round(plot.canvas.height() - y / plot.canvas.scale))
-
-
-def at_value(plot: Plot, frequency_hz: float, value: float) -> QPoint:
-    """Where a frequency and a value are on the surface."""
-    return on_surface(plot, *plot.axes.axes.transData.transform((frequency_hz, value)))
-
-
-def at_reflection(plot: SmithPlot, gamma: complex) -> QPoint:
-    """Where a reflection coefficient is on the surface."""
-    return on_surface(plot, *plot.axes.transData.transform((gamma.real, gamma.imag)))
-
-
-def click(qtbot, plot: Plot, at: QPoint) -> None:
-    qtbot.mouseClick(plot.canvas, Qt.MouseButton.LeftButton, pos=at)
-    painted(plot)
-
-
-def drawn(plot: Plot, number: int = 0) -> np.ndarray:
-    """The values of a curve's line."""
-    return np.asarray(plot.axes.strands[number].line.get_ydata())
-
-
-def widths(plot: Plot) -> list[float]:
-    return [strand.line.get_linewidth() for strand in plot.axes.strands]
+    return partial(shown, qtbot)
 
 
 # What the curves show
@@ -103,11 +48,11 @@ def widths(plot: Plot) -> list[float]:
 def test_return_loss_and_vswr_of_twice_the_impedance(show, qtbot):
     plot = show(MatchPlot, alone(100))  # a reflection of 1/3
     np.testing.assert_allclose(drawn(plot), np.full(101, 20 * np.log10(3)))
-    assert plot.axes.strands[0].note.get_text() == "9.54"
+    assert plot.axes.tags[0].note.get_text() == "9.54"
     qtbot.mouseClick(plot.words.buttons["VSWR"], Qt.MouseButton.LeftButton)
     painted(plot)
     np.testing.assert_allclose(drawn(plot), np.full(101, 2.0))
-    assert plot.axes.strands[0].note.get_text() == "2.00"
+    assert plot.axes.tags[0].note.get_text() == "2.00"
     assert plot.words.buttons["VSWR"].isChecked()
     assert not plot.words.buttons["return loss"].isChecked()
 
@@ -115,7 +60,7 @@ def test_return_loss_and_vswr_of_twice_the_impedance(show, qtbot):
 def test_a_perfect_match_and_none_at_all_are_drawn_at_the_end_of_the_scale(show, qtbot):
     plot = show(MatchPlot, alone(50))
     np.testing.assert_array_equal(drawn(plot), np.full(101, 60.0))
-    assert plot.axes.strands[0].note.get_text() == "∞"
+    assert plot.axes.tags[0].note.get_text() == "∞"
     shorted = show(MatchPlot, alone(0))
     qtbot.mouseClick(shorted.words.buttons["VSWR"], Qt.MouseButton.LeftButton)
     painted(shorted)
@@ -132,7 +77,7 @@ def test_phase_and_amplitude_from_the_middle(show, qtbot):
     painted(plot)
     np.testing.assert_allclose(drawn(plot, 0), np.full(101, 10 * np.log10(2)), atol=1e-9)
     np.testing.assert_allclose(drawn(plot, 1), np.full(101, -10 * np.log10(2)), atol=1e-9)
-    assert [strand.name.get_text() for strand in plot.axes.strands] == ["A", "B"]
+    assert [tag.name.get_text() for tag in plot.axes.tags] == ["A", "B"]
 
 
 def test_smith_chart_shows_the_radio_and_the_port_through_which_the_wave_enters(show):
@@ -149,7 +94,7 @@ def test_smith_chart_shows_the_radio_and_the_port_through_which_the_wave_enters(
         assert entered.part_id == "leg A"
         # 100 ohm through a quarter wave of 50 ohm is 25 ohm; in the middle of the band: a reflection of -1/3.
         assert entered.gamma[50] == pytest.approx(-1 / 3, abs=1e-6)
-        assert plot.strands[1].line.get_xdata()[50] == pytest.approx(-1 / 3, abs=1e-6)
+        assert rows(line_of(plot.bundle, plot.look.ink), 101)[0, 50].real == pytest.approx(-1 / 3, abs=1e-6)
 
 
 def test_the_limit_is_a_no_go_band_over_the_band_only(show, qtbot):
@@ -200,7 +145,7 @@ def test_one_frequency_is_drawn_as_dots(show):
     sketch = Sketch(868e6)
     sketch.join(f"{sketch.add('radio', 'radio')}:1", f"{sketch.antenna(100, 'A')}:1")
     plot = show(MatchPlot, sketch.plan())
-    assert plot.axes.strands[0].line.get_marker() == "o"
+    assert plot.axes.bundle.lines[0].get_marker() == "o"
     low_hz, high_hz = plot.axes.axes.get_xlim()
     assert low_hz < 868e6 < high_hz
 
@@ -211,16 +156,15 @@ def test_names_are_shown_as_written_and_followed_without_a_new_answer(show):
     plot.store.edit("Name", edits.labelled(plot.store.plan, "A", label="$x_1$ up\nhigh"))
     painted(plot)
     assert plot.store.answer is answer
-    name = plot.axes.strands[0].name
+    name = plot.axes.tags[0].name
     assert name.get_text() == "$x_1$ up hi…"
-    assert not name.get_parse_math()
 
 
 def test_names_of_equal_curves_are_pushed_apart(show):
     plot = show(CurrentsPlot, on_a_tee(50, 50, 50, 50))
-    heights = sorted(strand.name.get_position()[1] for strand in plot.axes.strands)
+    heights = sorted(tag.name.get_position()[1] for tag in plot.axes.tags)
     assert np.diff(heights).min() > 12
-    assert plot.axes.strands[0].name.get_position()[0] > plot.axes.axes.bbox.x1
+    assert plot.axes.tags[0].name.get_position()[0] > plot.axes.axes.bbox.x1
 
 
 def test_many_antennas_carry_names_only_where_they_stand_out(show):
@@ -264,7 +208,7 @@ def test_a_click_on_a_curve_or_its_name_selects_the_antenna(show, qtbot):
     mark_hz = plot.store.plan.band.marked_hz
     click(qtbot, plot, at_value(plot, 863e6, drawn(plot, 1)[30]))
     assert plot.store.selected == ("B",)
-    x, y = plot.axes.strands[0].name.get_position()
+    x, y = plot.axes.tags[0].name.get_position()
     click(qtbot, plot, on_surface(plot, x + 3, y))
     assert plot.store.selected == ("A",)
     assert plot.store.plan.band.marked_hz == mark_hz
@@ -364,9 +308,10 @@ def test_another_look_recolours_paper_curves_and_letters(show, kind):
         plot.set_look(look)
         painted(plot)
         assert plot.grab().toImage().pixelColor(corner).name() == look.paper
-        strand = (plot.strands if kind is SmithPlot else plot.axes.strands)[0]
+        bundle, tags = (plot.bundle, plot.tags) if kind is SmithPlot else (plot.axes.bundle, plot.axes.tags)
         expected = look.curve(0) if kind is CurrentsPlot else look.impedance[1]
-        assert to_hex(strand.line.get_color()) == expected
+        assert line_of(bundle, expected).get_linewidth() > 0
+        assert to_hex(tags[0].dot.get_color()) == expected
         assert to_hex(plot.readout.text.get_color()) == look.ink
 
 

@@ -268,6 +268,31 @@ def test_keys_step_along_the_grid(qtbot: QtBot, key: Qt.Key, mark_hz: float) -> 
     assert shown.plan.band.mark_hz == mark_hz
 
 
+@pytest.mark.parametrize(
+    ("key", "mark_hz"),
+    [
+        (Qt.Key.Key_Right, 869e6),
+        (Qt.Key.Key_PageUp, 878e6),
+        (Qt.Key.Key_PageDown, 858e6),
+        (Qt.Key.Key_Home, 840e6),
+        (Qt.Key.Key_End, 905e6),
+    ],
+)
+def test_keys_step_along_a_sweep_and_to_a_channel_beyond_it(qtbot: QtBot, key: Qt.Key, mark_hz: float) -> None:
+    sweep = {"start_hz": 840e6, "stop_hz": 900e6, "points": 61}  # 1 MHz a step
+    shown = store(sweep=sweep, channels=[{"name": "far", "hz": 905e6}])
+    qtbot.keyClick(rail_on(qtbot, shown), key)
+    assert shown.plan.band.mark_hz == mark_hz
+
+
+def test_keys_stop_at_a_channel_between_two_points(qtbot: QtBot) -> None:
+    shown = store(channels=[{"name": "up", "hz": 868.3e6}])
+    rail = rail_on(qtbot, shown)
+    for mark_hz in (868.3e6, 869e6):
+        qtbot.keyClick(rail, Qt.Key.Key_Right)
+        assert shown.plan.band.mark_hz == mark_hz
+
+
 @pytest.mark.parametrize(("key", "mark_hz"), [(Qt.Key.Key_Right, 869e6), (Qt.Key.Key_Left, 868e6)])
 def test_the_first_step_goes_to_the_next_point(qtbot: QtBot, key: Qt.Key, mark_hz: float) -> None:
     shown = store()
