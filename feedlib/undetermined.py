@@ -17,6 +17,8 @@ from feedlib.parts.base import Junction, Lines, Part
 from feedlib.plan import Placed, Plan, Port
 
 GROUND = Port("", 0)
+SHORTEST_M = 1e-12
+"""A section shorter than an atom is no length: the current around a loop of such would be rounding noise."""
 
 
 def refuse_undetermined(plan: Plan) -> None:
@@ -94,9 +96,9 @@ def is_short(part: Part) -> bool:
 
 
 def _no_length(part: Part) -> bool:
-    if getattr(part, "loss_db", 0) > 0 or getattr(part, "length_m", 0) > 0:
+    if getattr(part, "loss_db", 0) > 0 or getattr(part, "length_m", 0) > SHORTEST_M:
         return False
-    return all(end is None or end.length_m == 0 for end in getattr(part, "ends", ()))
+    return all(end is None or end.length_m <= SHORTEST_M for end in getattr(part, "ends", ()))
 
 
 def _reached(plan: Plan) -> set[str]:

@@ -1,8 +1,8 @@
 """Quarter waves that match antennas to a radio, of the cables asked for or else of the catalogue. Knows no plan.
 
 N equal branches of Z, each behind a quarter wave of Z1, show Z1^2/(Z N) (Pozar, Microwave Engineering, 4th ed.,
-sec. 2.5). Of the cables asked for those are taken that match best; where they leave less than GOOD_DB of return loss,
-one of the catalogue takes their place if it does better than that.
+sec. 2.5). Of the cables asked for those are taken that match best. Where they leave less than GOOD_DB of return loss,
+some of the catalogue take their place if these come near to what is wanted, as few as will do.
 """
 
 from __future__ import annotations
@@ -22,6 +22,9 @@ from feedlib.plan import Cable
 NamedCable = tuple[str, Cable]
 
 GOOD_DB = 20.0
+"""Return loss from which on the cables asked for are good enough."""
+NEAR_DB, MUCH_DB = 15.0, 1.0
+"""Return loss from which on the catalogue's may replace them, and by how much they must be better."""
 EQUAL_DB = 0.5
 """By how much the currents of antennas may differ."""
 NEAR_50_OHM = 5.0
@@ -87,14 +90,14 @@ def best_match(asked: Asked, counts: Sequence[int]) -> Match:
 
     best, caution = max(product(own, repeat=len(counts)), key=return_loss_db), ""
     if (own_db := return_loss_db(best)) < GOOD_DB:
-        caution = "Neither these cables nor those of the catalogue match well here."
-        good = [cables for cables in product(asked.pool(), repeat=len(counts)) if return_loss_db(cables) >= GOOD_DB]
-        if good:
+        caution = "No cable of the catalogue would match much better."
+        trials = list(product(asked.pool(), repeat=len(counts)))
+        best_db = max(map(return_loss_db, trials))
+        if best_db >= max(NEAR_DB, own_db + MUCH_DB):
+            good = [cables for cables in trials if return_loss_db(cables) >= min(GOOD_DB, best_db)]
             best = min(good, key=lambda cables: (sum(c not in own for c in cables), -return_loss_db(cables)))
-            foreign = " and ".join(dict.fromkeys(c[0] for c in best if c not in own))
-            caution = (
-                f"{foreign} comes from the catalogue: the cables asked for would leave {format_db(own_db)} at best."
-            )
+            foreign = " and ".join(dict.fromkeys(name for name, cable in best if (name, cable) not in own))
+            caution = f"Taken from the catalogue: {foreign}; those asked for would leave {format_db(own_db)} at best."
     return Match(best, shown_ohm(best), return_loss_db(best), caution)
 
 

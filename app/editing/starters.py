@@ -23,6 +23,8 @@ Measure = Callable[[Plan], tuple[Sizes, PortSides]]
 
 LIMITS_DB = (20.0, 15.0, 10.0)
 """Return loss that a starter may ask for: the first that its match holds by 1 dB, else the last."""
+LONGER_DB = 1.0
+"""Amplitude balance asked of antennas of which one hangs behind three quarter waves more of cable than another."""
 PERFECT_DB = 60.0
 HALF_BAND = 0.01
 QUARTER_DEG, HALF_DEG, WHOLE_DEG = 90.0, 180.0, 360.0
@@ -87,10 +89,10 @@ def _matched_by_name(plan: Plan, *names: str) -> Plan:
     return plan
 
 
-def _told(plan: Plan, title: str, return_loss_db: float, *notes: str) -> Plan:
+def _told(plan: Plan, title: str, return_loss_db: float, *notes: str, equal_db: float = EQUAL_DB) -> Plan:
     """The plan with its title, limits that it can hold, and notes."""
     least_db = next((limit for limit in LIMITS_DB if return_loss_db >= limit + 1), LIMITS_DB[-1])
-    limits = Limits(return_loss_db=least_db, amplitude_balance_db=EQUAL_DB, phase_balance_deg=5.0)
+    limits = Limits(return_loss_db=least_db, amplitude_balance_db=equal_db, phase_balance_deg=5.0)
     return replace(plan, title=title, limits=limits, notes=" ".join(filter(None, notes)))
 
 
@@ -176,7 +178,8 @@ def _sequential(asked: Asked) -> Plan:
     turned = (
         "Turn each antenna by 90° against the one before, the way round that its hand wants; otherwise they cancel."
     )
-    return _told(plan, "Four in sequential rotation", match.return_loss_db, first, caution, turned)
+    title, loss_db = "Four in sequential rotation", match.return_loss_db
+    return _told(plan, title, loss_db, first, caution, turned, equal_db=LONGER_DB)
 
 
 def _split(asked: Asked, part_id: str, part: Splitter) -> tuple[Plan, Match]:

@@ -241,10 +241,10 @@ KEYS = (
 )
 
 
-@pytest.mark.parametrize("seed", range(6))
+@pytest.mark.parametrize("seed", range(4))
 def test_a_storm_of_hands(whole: tuple[Window, Hands], hands: Hands, seed: int) -> None:
     """Presses, moves, wheels, keys and drops in any order at places where something is."""
-    storm(whole[0], hands, random.Random(seed), 150)
+    storm(whole[0], hands, random.Random(seed), 80)
 
 
 def storm(window: Window, hands: Hands, chance: random.Random, count: int) -> None:
@@ -253,7 +253,7 @@ def storm(window: Window, hands: Hands, chance: random.Random, count: int) -> No
     hands.key(Qt.Key.Key_Escape)
     for button in (LEFT, MIDDLE, RIGHT):
         hands.release((0, 0), button=button)
-    hands.key(Qt.Key.Key_Escape)
+    hands.move((5, 5))
     as_planned(hands)
     while hands.store.stack.canUndo():
         hands.store.stack.undo()
@@ -283,6 +283,7 @@ def act(window: Window, hands: Hands, chance: random.Random) -> None:
             hands.click(place, keys=keys)
         case "twice":
             QTest.mouseDClick(hands.view.viewport(), button, keys, hands.pixel(place))
+            QTest.mouseRelease(hands.view.viewport(), button, keys, hands.pixel(place))
         case "wheel":
             hands.wheel(place, chance.choice([1, -1, 0.25, 3, -8]), keys=keys)
         case "key":

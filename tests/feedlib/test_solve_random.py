@@ -207,8 +207,9 @@ def test_a_coax_turned_end_for_end_is_the_same(plan, data):
 @given(random_plans(), st.data())
 def test_two_coaxes_side_by_side_are_one_of_half_their_impedance(plan, data):
     """The pair closes a loop, so what a tree answers by cascading comes out of the way that serves loops too."""
-    assume(plain_coaxes(plan))
-    same_answer(plan, doubled(plan, data.draw(st.sampled_from(plain_coaxes(plan)))))
+    long_enough = [name for name in plain_coaxes(plan) if plan.placed(name).part.length_m > 1e-6]
+    assume(long_enough)  # a loop of next to no length has a current of next to no certainty
+    same_answer(plan, doubled(plan, data.draw(st.sampled_from(long_enough))))
 
 
 def test_random_plans_reach_what_they_are_for():
