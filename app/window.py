@@ -21,7 +21,7 @@ from PySide6.QtWidgets import (
 )
 
 from app.actions import build_menus
-from app.bench.hand import Hand
+from app.bench.hand import Hand, drawn
 from app.bench.placing import Placing
 from app.bench.view import BenchView
 from app.editing import edits
@@ -35,6 +35,7 @@ from app.panels.drawer import PartsDrawer
 from app.panels.drawer_entries import MEASURED, entries
 from app.panels.rail import FrequencyRail
 from app.panels.side_sheet import SideSheet
+from app.panels.starter_dialog import StarterDialog
 from app.panels.style import button_text
 from app.panels.verdicts import VerdictStrip
 from app.reporting import say
@@ -182,6 +183,15 @@ class Window(QMainWindow):
         """Select every part."""
         self.store.select(tuple(p.id for p in self.store.plan.parts))
 
+    def begin(self) -> None:
+        """Begin with a starter."""
+        if not self.files.may_go():
+            return
+        dialog = StarterDialog(self, self.look, drawn, self.store.plan.band.marked_hz)
+        if dialog.exec() and dialog.plan is not None:
+            self.store.open(dialog.plan, None)
+        dialog.deleteLater()
+
     def paste(self) -> None:
         """Put copied parts in the middle of what is seen, or under the pointer."""
         here = self.bench.mapFromGlobal(QCursor.pos())
@@ -254,15 +264,30 @@ class Window(QMainWindow):
             onto = None if under is None else under.shown.placed.id
             self.placing.put_file(Path(name), at, self.bench.bench.join_under(at), onto)
 
+    def offer_behind(self) -> None:
+        """Offer the parts that may stand behind the selected one; all by keys."""
+        part_id = self.store.selected[0] if self.store.selected else None
+        at = self.bench.bench.parts[part_id].pos() if part_id is not None else self._middle()
+        key = self._chosen_part(self.bench.mapToGlobal(self.bench.mapFromScene(at)))
+        if key is not None:
+            self.placing.put_behind(key, self._middle())
+        self.bench.setFocus()
+
     def _offer(self, port: Port, at: QPointF, screen: QPoint) -> None:
         """The parts that may stand where a join was pulled to."""
+        key = self._chosen_part(screen)
+        if key is not None:
+            self.placing.put_at_port(key, at, port)
+
+    def _chosen_part(self, screen: QPoint) -> str | None:
         menu = QMenu(self)
         menu.setPalette(palette_of(self.look))
         for key, entry in entries().items():
             menu.addAction(entry.label).setData(key)
+        menu.setActiveAction(menu.actions()[0])
         chosen = menu.exec(screen)
-        if chosen is not None:
-            self.placing.put_at_port(str(chosen.data()), at, port)
+        menu.deleteLater()
+        return None if chosen is None else str(chosen.data())
 
     def _middle(self) -> QPointF:
         return self.bench.mapToScene(self.bench.viewport().rect().center())
@@ -289,7 +314,7 @@ class Window(QMainWindow):
         self.band.setText(f"{plan.band.start_hz / 1e6:.9g} to {plan.band.stop_hz / 1e6:.9g} MHz{channels}")
         empty = len(plan.parts) <= 1
         self.hint.setText(
-            "Drag parts from the left on to the bench, or double-click one.\n"
+            "Drag parts from the left on to the bench, or double-click one; File has starters to begin with.\n"
             "Pull from port to port to join; pull into the empty bench to be offered what fits."
         )
         self.hint.adjustSize()

@@ -9,7 +9,7 @@ from PySide6.QtGui import QColor, QFontMetricsF, QPainter, QPainterPath, QPainte
 from PySide6.QtWidgets import QGraphicsItem, QStyleOptionGraphicsItem, QWidget
 
 from app.bench.pictures import PICTURES, Shown
-from app.bench.pictures.base import PORT_RADIUS, growth, pen, text
+from app.bench.pictures.base import PORT_RADIUS, growth, is_far, pen, text
 from app.look import SIGNS, Look, font
 from feedlib.plan import Join, Port
 
@@ -90,7 +90,7 @@ class PartItem(QGraphicsItem):
             text(painter, shown.name, QPointF(0, y), look.ink, bold=True, grows=True)
             y += TEXT_LINE * growth(painter)
         detail, state = picture.detail(shown), picture.state(shown)
-        if detail:
+        if detail and (state or self.selected or not is_far(painter)):
             sign = f"{SIGNS[state]} " if state else ""
             colour = look.verdict(state) if state else look.soft
             widest = max(230.0, self.body.width() + 90)
@@ -205,6 +205,8 @@ class FlagItem(QGraphicsItem):
         return QRectF(-width / 2 - 1, -height - 1, width + 2, height + 2)
 
     def paint(self, painter: QPainter, option: QStyleOptionGraphicsItem, widget: QWidget | None = None) -> None:
+        if is_far(painter):
+            return
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)
         stem = pen(self.look.soft, 1)
         stem.setStyle(Qt.PenStyle.DotLine)

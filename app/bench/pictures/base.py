@@ -113,7 +113,16 @@ def polyline(painter: QPainter, points: list[tuple[float, float]]) -> None:
 
 def growth(painter: QPainter) -> float:
     """How much larger words are drawn on a bench that is zoomed out, so that they can still be read."""
-    return min(1.7, max(1.0, 0.95 / max(painter.worldTransform().m11(), 0.1)))
+    return min(1.5, max(1.0, 0.95 / max(painter.worldTransform().m11(), 0.1)))
+
+
+FAR = 0.55
+"""Below this zoom a part's own figures and the impedance flags would cover each other, and are left out."""
+
+
+def is_far(painter: QPainter) -> bool:
+    """Whether the bench is seen from so far that only names and antennas' figures are written."""
+    return painter.worldTransform().m11() < FAR
 
 
 def text(
