@@ -61,11 +61,20 @@ ACTIONS: tuple[ActionRecord, ...] = (
     ActionRecord("save", "File", "&Save", STANDARD.Save, lambda w: w.files.save(), "Save the plan"),
     ActionRecord("save_as", "File", "Save &as…", STANDARD.SaveAs, lambda w: w.files.save_as(), "Save under a new name"),
     ActionRecord(RULE, "File", "", None, lambda w: None),
-    ActionRecord("quit", "File", "&Quit", STANDARD.Quit, lambda w: w.close(), "Close the window"),
+    ActionRecord("quit", "File", "&Quit", "Ctrl+Q", lambda w: w.close(), "Close the window"),
     ActionRecord("undo", "Edit", "&Undo", STANDARD.Undo, lambda w: w.store.stack.undo(), "Take the last act back"),
     ActionRecord("redo", "Edit", "&Redo", STANDARD.Redo, lambda w: w.store.stack.redo(), "Do it again"),
     ActionRecord(RULE, "Edit", "", None, lambda w: None),
     ActionRecord("delete", "Edit", "&Delete", STANDARD.Delete, lambda w: w.delete(), "Take parts or a join away"),
+    ActionRecord(RULE, "Edit", "", None, lambda w: None),
+    ActionRecord("cut", "Edit", "Cu&t", STANDARD.Cut, lambda w: w.hand.cut(), "Copy the parts and take them away"),
+    ActionRecord("copy", "Edit", "&Copy", STANDARD.Copy, lambda w: w.hand.copy(), "Copy the parts"),
+    ActionRecord("paste", "Edit", "&Paste", STANDARD.Paste, lambda w: w.paste(), "Put copied parts on the bench"),
+    ActionRecord(RULE, "Edit", "", None, lambda w: None),
+    ActionRecord("put", "Edit", "Put a part &behind…", "Ins", lambda w: w.offer_behind(), "Behind the selected part"),
+    ActionRecord(
+        "again", "Edit", "The same &leg again", "Ctrl+D", lambda w: w.hand.again(), "One leg more of the same"
+    ),
     ActionRecord(
         "select_all", "Edit", "Select &all", STANDARD.SelectAll, lambda w: w.select_all(), "Select every part"
     ),

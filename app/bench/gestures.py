@@ -18,7 +18,7 @@ from app.editing.wording import format_length, wheel_step_m
 from app.look import font
 from feedlib.conventions import guided_wavelength_m
 from feedlib.parts import Coax
-from feedlib.plan import Port
+from feedlib.plan import Join, Port
 
 
 class Offer(Protocol):
@@ -61,6 +61,7 @@ class MoveParts(Gesture):
         self.guides = Guides(scene, self.from_at)
         self.hint = JoinHint(scene)
         self.tie: tuple[Port, Port] | None = None
+        self.into: Join | None = None
 
     def move(self, at: QPointF, free: bool) -> None:
         shift = at - self.start
@@ -73,12 +74,24 @@ class MoveParts(Gesture):
         for part_id, place in self.from_at.items():
             self.scene.parts[part_id].setPos(place + shift)
         self.scene.follow_places()
-        self.tie = self._meeting()
-        if self.tie is None:
+        self.tie, self.into = self._meeting(), self._splice(at)
+        if self.into is not None:
+            line = self.scene.joins[self.into]
+            self.hint.show(line.shape_line(), f"put into {self.into[0]} – {self.into[1]}", at, good=True)
+        elif self.tie is None:
             self.hint.hide()
         else:
             a, b = (self.scene.parts[p.part].port_at(p.number) for p in self.tie)
             self.hint.show(straight(a, b), f"join {self.tie[0]} to {self.tie[1]}", b, good=True)
+
+    def _splice(self, at: QPointF) -> Join | None:
+        """The join that a single part with no ties of its own is held over."""
+        plan = self.store.plan
+        if len(self.from_at) > 1 or plan.placed(self.grabbed).part.ports < 2:
+            return None
+        join = self.scene.join_under(at)
+        ties = any(port.part == self.grabbed for tie in plan.joins for port in tie)
+        return None if ties else join
 
     def _meeting(self) -> tuple[Port, Port] | None:
         """A free port of what is moved, and a free port of the rest that it has come near to."""
@@ -109,7 +122,9 @@ class MoveParts(Gesture):
         places = {i: (self.scene.parts[i].pos().x(), self.scene.parts[i].pos().y()) for i in self.from_at}
         name = self.store.plan.placed(self.grabbed).name if len(places) == 1 else f"{len(places)} parts"
         plan = edits.moved(self.store.plan, places)
-        if self.tie is None:
+        if self.into is not None:
+            self.store.edit(f"Put {name} into the join", edits.spliced(plan, self.into, self.grabbed))
+        elif self.tie is None:
             self.store.edit(f"Move {name}", plan)
         else:
             self.store.edit(f"Join {self.tie[0]} to {self.tie[1]}", edits.joined(plan, *self.tie))

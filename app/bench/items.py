@@ -150,6 +150,10 @@ class JoinItem(QGraphicsItem):
         self.prepareGeometryChange()
         self._path = curve(a[0], b[0], 1 if a[1] > 0 else -1, 1 if b[1] > 0 else -1)
 
+    def shape_line(self) -> QPainterPath:
+        """The curve itself."""
+        return self._path
+
     def flag_place(self) -> tuple[QPointF, float]:
         """Where an impedance flag stands, and how long its stem is: at a coax's end above its swell, else half-way."""
         for item, port in zip((self.second, self.first), reversed(self.join), strict=True):

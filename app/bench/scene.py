@@ -16,6 +16,7 @@ from app.bench.pictures.base import Dial, pen
 from app.editing.wording import format_impedance
 from app.look import Look
 from app.store import Store
+from app.units import units
 from feedlib import Plan
 from feedlib.parts.base import Junction, ManyPort, Part
 from feedlib.parts.radio import Radio
@@ -43,6 +44,7 @@ class BenchScene(QGraphicsScene):
         store.answer_changed.connect(self.show_answer)
         store.selection_changed.connect(self._follow_selection)
         store.hover_changed.connect(self._follow_hover)
+        units().changed.connect(self._follow_unit)
         self._follow_plan(None, store.plan)
         self.show_answer()
 
@@ -109,7 +111,8 @@ class BenchScene(QGraphicsScene):
         store = self.store
         known = self._answered.get(placed.id) is type(placed.part)
         answer = store.answer if known else None  # it may be behind the plan for a moment
-        return Shown(placed, store.plan, answer, self.look, store.hovered == placed.id, self._dials.get(placed.id))
+        dial = self._dials.get(placed.id)
+        return Shown(placed, store.plan, answer, self.look, store.hovered == placed.id, dial, self._unit)
 
     def _mark_troubles(self) -> None:
         stopped = {p.part_id for p in self.store.problems if p.stops} | {self.store.culprit}
@@ -161,6 +164,10 @@ class BenchScene(QGraphicsScene):
         for other, item in self.joins.items():
             item.selected = other == join
             item.update()
+
+    def _follow_unit(self) -> None:
+        self._unit = units().length
+        self._show_all()
 
     def _follow_hover(self) -> None:
         for placed in self.store.plan.parts:

@@ -14,7 +14,7 @@ from app.editing.cutting import CUTS_DEG, cut_length_m, cut_to, electrical_deg, 
 from app.editing.matched import matched
 from feedlib import Plan, PlanError, SolveError, solve
 from feedlib.parts import Antenna, AntennaImpedance, Coax, CoaxEnd, Load, Lumped, Measured, Pad, Part, Splitter, Tee
-from feedlib.plan import Band, Cable
+from feedlib.plan import Band, Cable, Channel
 from tests.plans import Sketch, frequency, passive_s, random_plans, touchstone
 
 C = 299_792_458.0
@@ -233,7 +233,9 @@ def test_a_moved_plan_does_at_each_new_frequency_what_it_did_at_the_old_one(plan
 
 @given(random_plans(), frequency())
 def test_there_and_back_is_where_it_was(plan: Plan, mark_hz: float) -> None:
-    there, _ = moved_to_frequency(plan, mark_hz)
+    channels = (Channel(name="at the mark", hz=plan.band.marked_hz),)
+    there, _ = moved_to_frequency(dataclasses.replace(plan, channels=channels), mark_hz)
+    assert there.band.mark_hz == there.channels[0].hz == mark_hz
     back, _ = moved_to_frequency(there, plan.band.marked_hz)
     assert back.band.mark_hz == plan.band.mark_hz
     for placed, first in zip(back.parts, plan.parts, strict=True):

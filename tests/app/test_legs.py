@@ -307,11 +307,20 @@ def test_what_hangs_at_no_junction_cannot_be_had_again(chosen: str) -> None:
 
 def test_a_common_port_that_is_open_is_left_to_the_radio() -> None:
     """Legs at a splitter that nothing feeds yet."""
-    plan = splitter_pair("wilkinson", 3).plan()
+    plan = splitter_pair("wilkinson").plan()
     plan = dataclasses.replace(plan, joins=plan.joins[1:])
     after, _ = same_leg_again(plan, ["A"])
     assert after.mate(port("split:1")) is None
     assert after.mate(port("split:4")) == port("C:1")
+    assert after.placed("split").part.ports == 4
+
+
+def test_the_free_port_after_the_leg_is_taken_before_one_above_it() -> None:
+    plan = splitter_pair("wilkinson", 5, (3, 5)).plan()
+    assert same_leg_again(plan, ["A"])[0].mate(port("split:4")) == port("C:1")
+    assert same_leg_again(plan, ["B"])[0].mate(port("split:6")) == port("C:1")
+    full_below = splitter_pair("wilkinson", 3, (3, 4)).plan()
+    assert same_leg_again(full_below, ["B"])[0].mate(port("split:2")) == port("C:1")
 
 
 def test_labels_are_not_doubled_and_notes_are_kept() -> None:
@@ -430,6 +439,10 @@ def test_matched_sets_of_a_piece() -> None:
         "B": ("match A 2", "match B 2"),
     }
     assert matched_sets(pasted(Sketch().plan(), both, (0, 0))[0]) == {"A": ("match A", "match B")}
+    two_sets = matched(plan, ["tail A", "tail B"])
+    legs = copied_text(two_sets, ["match A", "match B", "tail A", "tail B"])
+    names = matched_sets(pasted(longer, legs, (0, 0))[0])
+    assert [len(members) for members in names.values()] == [2, 2, 2]
     alone = copied_text(plan, ["match A"])
     assert matched_sets(pasted(Sketch().plan(), alone, (0, 0))[0]) == {}
     assert matched_sets(pasted(plan, alone, (0, 0))[0]) == {"A": ("match A", "match B", "match A 2")}

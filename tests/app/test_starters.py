@@ -220,6 +220,15 @@ def test_no_cable_of_the_catalogue_is_taken_beyond_its_frequency() -> None:
     assert sections(built("three", frequency_hz=2.4e9))["match A"].cable != "RG-62A/U"
 
 
+@pytest.mark.parametrize("impedance_ohm", [45, 60])
+def test_no_more_of_the_catalogue_than_needed(impedance_ohm: float) -> None:
+    """One level of two will do, though two foreign cables would match still better."""
+    plan = built("six", impedance_ohm)
+    foreign = set(plan.cables) - {"fifty", "seventy-five"}
+    assert len(foreign) == 1
+    assert len({coax.cable for i, coax in sections(plan).items() if i != "feeder"} - foreign) == 1
+
+
 def test_where_nothing_is_near_the_given_cable_stays_and_the_notes_say_so() -> None:
     """Four of 200 ohm at one T joint want 200 ohm; 75 is the best of the two: 75^2/200/4 = 7.03 ohm, 2.45 dB."""
     plan = built("four", 200)

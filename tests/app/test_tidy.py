@@ -207,6 +207,36 @@ def test_a_section_that_its_matched_set_holds_fast_is_not_turned() -> None:
     assert tidy(plan).joins == plan.joins
 
 
+def test_a_part_with_fields_of_a_later_version_is_not_turned() -> None:
+    """What these mean may hang on the direction."""
+    sketch = Sketch()
+    sketch.add("radio", "radio")
+    sketch.coax(0.1, part_id="leg", taper="towards port 2")
+    sketch.join("radio:1", "leg:2")
+    plan = sketch.plan()
+    assert tidy(plan).joins == plan.joins
+
+
+def test_a_tall_part_keeps_within_its_own_rows() -> None:
+    """A T joint of many ports, with an antenna above all and a hybrid with a large tree at its fourth port."""
+    sketch = Sketch()
+    sketch.add("radio", "radio")
+    sketch.add("tee", "first")
+    sketch.add("tee", "tall", ports=40)
+    sketch.add("splitter", "hybrid", form="branch_line", centre_hz=868e6)
+    sketch.add("tee", "wide", ports=9)
+    sketch.antenna(part_id="beside")
+    sketch.antenna(part_id="upper")
+    sketch.antenna(part_id="lower")
+    sketch.join("radio:1", "first:1", "first:2", "beside:1", "first:3", "tall:1", "tall:2", "upper:1")
+    sketch.join("tall:40", "hybrid:1", "hybrid:4", "wide:1", "hybrid:2", "lower:1")
+    for n in range(8):
+        sketch.join(f"wide:{n + 2}", f"{sketch.antenna(part_id=f'A{n}')}:1")
+    plan = tidy(sketch.plan())
+    assert overlapping(plan) == []
+    assert crossing(plan) == []
+
+
 def test_a_tee_faces_the_radio_with_its_first_port() -> None:
     sketch = Sketch()
     sketch.add("radio", "radio")
@@ -301,6 +331,18 @@ def test_a_thousand_parts() -> None:
         chain.join(last, f"p{n}:1")
         last = f"p{n}:2"
     assert {y for _, y in (p.at for p in tidy(chain.plan()).parts)} == {0.0}
+
+
+def test_a_loose_harness_hangs_at_its_joint() -> None:
+    """Not at the antenna that comes first in the plan."""
+    sketch = Sketch()
+    sketch.add("radio", "radio")
+    for name in "ABC":
+        sketch.antenna(part_id=name)
+    sketch.add("tee", "T")
+    sketch.join("A:1", "T:1", "B:1", "T:2", "C:1", "T:3")
+    plan = sketch.plan()
+    assert trees_of(plan)[1].root == "T"
 
 
 def test_the_root_of_a_plan_is_its_radio() -> None:

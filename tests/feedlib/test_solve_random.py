@@ -22,7 +22,7 @@ TOLERANCE = 1e-9
 WORST_CONDITION = 1e6
 
 few = settings(max_examples=60, deadline=None)
-many = settings(max_examples=150, deadline=None)
+many = settings(max_examples=120, deadline=None)
 
 
 def reference(plan: Plan, frequency_hz: np.ndarray) -> oracle.Driven:
@@ -173,10 +173,11 @@ def test_order_of_parts_and_joins_does_not_matter(plan, random):
 
 def same_answer(first: Plan, second: Plan) -> None:
     """Assert that two plans of the same antennas have the same figures."""
-    a, b = solve(first), solve(second)
+    a = solve(first)
     expected = reference(first, a.frequency_hz)
-    assume(reference(second, a.frequency_hz).condition < WORST_CONDITION)
+    reference(second, a.frequency_hz)
     assume(max(oracle.harness_s(p, a.frequency_hz)[1] for p in (first, second)) < WORST_CONDITION)
+    b = solve(second)
     close(b.antenna_current_a, a.antenna_current_a, TOLERANCE * expected.scale_v[:, None] / 50)
     close(b.antenna_voltage_v, a.antenna_voltage_v, TOLERANCE * expected.scale_v[:, None])
     close(b.reflected_share, a.reflected_share)

@@ -8,6 +8,7 @@ from typing import Literal
 from PySide6.QtCore import QPointF, QRectF, Qt
 from PySide6.QtGui import QColor, QFontMetricsF, QPainter, QPainterPath, QPen
 
+from app.editing.entry import LengthUnit
 from app.look import Look, font
 from feedlib import Answer, Plan
 from feedlib.plan import Placed
@@ -35,6 +36,7 @@ class Shown:
     look: Look
     hovered: bool = False
     dial: Dial | None = None
+    length_unit: LengthUnit = "mm"
 
     @property
     def name(self) -> str:

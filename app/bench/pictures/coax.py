@@ -9,7 +9,6 @@ from PySide6.QtCore import QPointF, QRectF, Qt
 from PySide6.QtGui import QColor, QFontMetricsF, QPainter, QPen, QPolygonF
 
 from app.bench.pictures.base import Picture, Shown, one_line, pen, stubs, text
-from app.editing.entry import LengthUnit
 from app.editing.wording import format_length
 from app.look import font
 from feedlib.conventions import Array, guided_wavelength_m
@@ -132,9 +131,12 @@ class CoaxPicture(Picture):
         part = shown.placed.part
         assert isinstance(part, Coax)
         cable = shown.plan.cables.get(part.cable)
-        unit: LengthUnit = "mm" if part.length_m < 2 else "m"
-        length = format_length(part.length_m, unit, frequency_hz=None, velocity_factor=None)
+        unit = "m" if shown.length_unit == "mm" and part.length_m >= 2 else shown.length_unit
+        factor = cable.velocity_factor if cable is not None else None
+        length = format_length(part.length_m, unit, frequency_hz=shown.plan.band.marked_hz, velocity_factor=factor)
         if cable is None:
             return f"no cable {one_line(part.cable)} · {length}"
+        if unit == "deg":
+            return f"{one_line(part.cable)} · {length}"
         degrees = electrical_deg(part, cable, shown.plan.band.marked_hz)
         return f"{one_line(part.cable)} · {length} · {degrees:.{1 if degrees < 1000 else 0}f}°"
