@@ -191,7 +191,8 @@ def end_states(network: Network, taken_off: Collection[int] = (), reference_ohm:
 class Looks:
     """What every edge sees away from the root: v, i (..., E, F), rows inside cores still empty.
 
-    scales, responses : by edge, the scale of each rescaled join and the response of each block, for the way back.
+    scales, responses : by edge, the scale of each rescaled join or line, and the response of each block, for the way
+    back.
     """
 
     v: ComplexArray
@@ -213,7 +214,10 @@ def look_away(network: Network, ends: ArrayState) -> Looks:
     for op in topology.ops:
         if isinstance(op, LineBatch):
             below = v[..., op.down, :], i[..., op.down, :]
-            through_lines(below, *table.rows(op.rows), (v[..., op.up, :], i[..., op.up, :]))
+            above = v[..., op.up, :], i[..., op.up, :]
+            through_lines(below, *table.rows(op.rows), above)
+            if op.rescale:
+                looks.scales[op.up.start] = brought_to_one(above)
         elif isinstance(op, JoinBatch):
             first = v[..., op.first, :], i[..., op.first, :]
             second = v[..., op.second, :], i[..., op.second, :]
@@ -263,8 +267,12 @@ def beside(first: ArrayState, second: ArrayState, rescale: bool, out: ArrayState
     np.multiply(first[0], second[0], out=v)
     np.multiply(first[1], second[0], out=i)
     i += second[1] * first[0]
-    if not rescale:
-        return None
+    return brought_to_one(out) if rescale else None
+
+
+def brought_to_one(state: ArrayState) -> Array:
+    """The scale that brings a state to the size of one, which is done in place."""
+    v, i = state
     size = np.abs(v) + WAVE_OHM * np.abs(i)
     scale: Array = 1 / np.where(size > 0, size, 1)
     v *= scale
@@ -301,7 +309,8 @@ def drive(network: Network, radio: Radio) -> Flows:
     scale[..., edge, :] = radio.open_circuit_v / whole
     for op in reversed(topology.ops):
         if isinstance(op, LineBatch):
-            put_product(scale, op.down, scale[..., op.up, :], network.table.k[..., op.rows, :])
+            k = network.table.k[..., op.rows, :]
+            put_product(scale, op.down, scale[..., op.up, :], k * looks.scales[op.up.start] if op.rescale else k)
         elif isinstance(op, JoinBatch):
             above = scale[..., op.up, :]
             if op.rescale:

@@ -10,9 +10,9 @@ from collections.abc import Sequence
 
 import numpy as np
 
-from feedlib.conventions import ComplexArray
+from feedlib.conventions import Array, ComplexArray
 from feedlib.errors import SolveError
-from feedlib.flows import ArrayState, Looks, Network, beside, end_states, look_away, through_lines
+from feedlib.flows import ArrayState, Looks, Network, beside, brought_to_one, end_states, look_away, through_lines
 from feedlib.topology import BlockOp, ChainOp, JoinBatch, LineBatch, Op, Rows, run
 
 MAX_BYTES = 2e9
@@ -57,6 +57,7 @@ class _Assembly:
         self.back_v, self.back_i = np.empty_like(self.away.v), np.empty_like(self.away.v)
         self.below: dict[int, tuple[list[int], ComplexArray, ComplexArray | None]] = {}
         self.turns: dict[tuple[int, int], ComplexArray] = {}
+        self.back_scales: dict[int, Array] = {}
 
     def matrix(self) -> ComplexArray:
         self._look_back()
@@ -98,6 +99,8 @@ class _Assembly:
             if isinstance(op, LineBatch):
                 out = self._back(op.down)
                 through_lines(self._back(op.up), *network.table.rows(op.rows), out)
+                if op.rescale:
+                    self.back_scales[op.up.start] = brought_to_one(out)
                 if not isinstance(op.down, slice):
                     self._set_back(op.down, out)
             elif isinstance(op, JoinBatch):
@@ -147,6 +150,10 @@ class _Assembly:
             lines = self.network.table.k[..., op.rows, :]
             for n, (up, down) in enumerate(zip(range(op.up.start, op.up.stop), _numbers(op.down), strict=True)):
                 self._along(up, down, lines[..., n, :])
+                if op.rescale and up in self.below:
+                    self._rescale(
+                        up, self.away.scales[op.up.start][..., n, :], self.back_scales[op.up.start][..., n, :]
+                    )
         elif isinstance(op, ChainOp):
             along = np.broadcast_to(np.asarray(self.network.chains[op.up].k), self.network.frequency_hz.shape)
             self._along(op.up, op.down, along)
@@ -168,6 +175,12 @@ class _Assembly:
         if found is not None:
             rows, ways, factor = found
             self.below[up] = rows, ways, k if factor is None else factor * k
+
+    def _rescale(self, up: int, down_scale: Array, up_scale: Array) -> None:
+        """A line whose states were brought to one, differently each way."""
+        rows, ways, factor = self.below[up]
+        ways = ways if factor is None else ways * factor[..., None, None, :]
+        self.below[up] = rows, ways * np.stack([down_scale, up_scale], -2)[..., :, None, :], None
 
     def _meet(self, up: int, edges: list[int], down: list[ComplexArray]) -> None:
         """Terminals below several edges of a join or block: S between them, and their ways on to its upper edge."""

@@ -21,8 +21,10 @@ from feedlib.plan import Join, Plan
 Rows = slice | Index
 Plane = tuple[int, int]
 """An edge, and +1 where its current flows into the thing whose plane it is, else -1."""
-RESCALE_AFTER = 8
-"""Joins multiply sizes: a join that gathers more ends than this brings its state back to the size of one."""
+RESCALE_AFTER = 8.0
+LINE_WEIGHT = 0.25
+"""Joins multiply sizes, lines of other impedances change them: what has gathered more ends than RESCALE_AFTER, a line
+counting as LINE_WEIGHT of one, brings its state back to the size of one."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -32,6 +34,7 @@ class LineBatch:
     up: slice
     down: Rows
     rows: slice
+    rescale: bool
 
 
 @dataclass(frozen=True, slots=True)
@@ -142,11 +145,11 @@ class _Compiler:
         self.graph: Graph = graph_of(plan)
         self.edge_count = len(self.graph.ends)
         self.found: list[tuple[int, Op]] = []  # height, operation on edges by their first numbers
-        self.lines: list[tuple[int, int, int, Element]] = []  # height, up, down, element
+        self.lines: list[tuple[int, int, int, Element, bool]] = []  # height, up, down, element, rescale
         self.joins: list[tuple[int, int, int, int, bool]] = []  # height, up, first, second, rescale
         self.ends: list[tuple[int, int]] = []  # edge, part
         self.height: dict[int, int] = {}
-        self.weight: dict[int, int] = {}
+        self.weight: dict[int, float] = {}
         self.into: dict[int, int] = {}  # edge -> element that its current flows into
         self.made: list[tuple[int, list[int]]] = []  # edge, edges below it; children before parents
         self.tied_to_itself: set[int] = set()
@@ -192,8 +195,10 @@ class _Compiler:
             height[up], self.weight[up] = 0, 1
         elif element.line is not None:
             (down,) = others
-            height[up], self.weight[up] = height[down] + 1, self.weight[down]
-            self.lines.append((height[up], up, down, element))
+            weight = self.weight[down] + LINE_WEIGHT
+            rescale = weight > RESCALE_AFTER
+            height[up], self.weight[up] = height[down] + 1, 1 if rescale else weight
+            self.lines.append((height[up], up, down, element, rescale))
         elif isinstance(part, Junction):
             self._joined(others, up)
         else:
@@ -278,13 +283,13 @@ class _Compiler:
         line_rows = _by_height(self.lines)
         join_rows = _by_height(self.joins)
         for height in sorted({*at_height, *line_rows, *join_rows}):
-            if height in line_rows:
-                found = line_rows[height]
-                rows = slice(len(lines), len(lines) + len(found))
-                lines.extend(element for *_, element in found)
-                down = run([number[d] for _, _, d, _ in found])
-                ops.append(LineBatch(self._take([up for _, up, *_ in found]), down, rows))
             for rescale in (False, True):
+                found = [line for line in line_rows.get(height, ()) if line[4] == rescale]
+                if found:
+                    rows = slice(len(lines), len(lines) + len(found))
+                    lines.extend(line[3] for line in found)
+                    down = run([number[line[2]] for line in found])
+                    ops.append(LineBatch(self._take([line[1] for line in found]), down, rows, rescale))
                 some = [j for j in join_rows.get(height, ()) if j[4] == rescale]
                 if some:
                     first, second = run([number[j[2]] for j in some]), run([number[j[3]] for j in some])

@@ -39,6 +39,7 @@ class BenchScene(QGraphicsScene):
         self.selected_join: Join | None = None
         self._dials: dict[str, Dial] = {}
         self._answered: dict[str, type[Part]] = {}
+        self._unit = units().length
         self.setItemIndexMethod(QGraphicsScene.ItemIndexMethod.NoIndex)
         store.plan_changed.connect(self._follow_plan)
         store.answer_changed.connect(self.show_answer)

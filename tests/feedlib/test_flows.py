@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import replace
+from itertools import pairwise
 
 import numpy as np
 import pytest
@@ -117,3 +118,24 @@ def test_frequency_slices_change_nothing(monkeypatch: pytest.MonkeyPatch) -> Non
     sliced = solve(plan)
     np.testing.assert_array_equal(whole.antenna_current_a, sliced.antenna_current_a)
     np.testing.assert_allclose(whole.harness_s, sliced.harness_s, atol=1e-14)
+
+
+def test_a_long_chain_of_other_impedances_keeps_its_digits() -> None:
+    """200 quarter waves of 10 and 200 ohm in turn: A = 1/D = (10/200)^100, so S21 = 2/(A + D) in the references."""
+    sections = [Placed(f"coax {n}", Coax(cable="low" if n % 2 == 0 else "high", length_m=0.75)) for n in range(200)]
+    names = ["radio", *(p.id for p in sections), "A"]
+    joins = tuple((Port(a, 1 if a == "radio" else 2), Port(b, 1)) for a, b in pairwise(names))
+    plan = Plan(
+        band=Band(start_hz=99_930_819.33, stop_hz=99_930_819.33, points=1),  # c / 3 m: 0.75 m are a quarter wave
+        cables={"low": Cable(z0_ohm=10.0, velocity_factor=1.0), "high": Cable(z0_ohm=200.0, velocity_factor=1.0)},
+        parts=(
+            Placed("radio", Radio()),
+            *sections,
+            Placed("A", Antenna(impedance=AntennaImpedance(fixed_ohm=50 + 0j))),
+        ),
+        joins=joins,
+    )
+    s = solve(plan).harness_s[0]
+    assert abs(s[1, 0]) == pytest.approx(2 / (20.0**100 + 20.0**-100), rel=1e-6)
+    assert abs(s[0, 1]) == pytest.approx(abs(s[1, 0]), rel=1e-9)
+    assert abs(s[0, 0]) == pytest.approx(1, abs=1e-12)
