@@ -18,6 +18,7 @@ from feedlib.arcs import smallest_arc_deg
 from feedlib.conventions import Array, ComplexArray, Index
 from feedlib.flows import Flows, LineValues, Network, network_of
 from feedlib.harness import MAX_BYTES, bytes_of, harness_s
+from feedlib.impedances import all_impedances, impedance_at
 from feedlib.parts import Antenna, Radio
 from feedlib.plan import Plan
 from feedlib.swells import Swell, swells_of
@@ -103,6 +104,10 @@ class Figures:
     def port_impedance_ohm(self) -> Mapping[str, ComplexArray]:
         """(F,) by port: V/I from near to far; inf where I = 0, nan where the radio does not reach."""
         return MappingProxyType({key: z[..., self._part] for key, z in self._solved.port_impedance.items()})
+
+    def impedance_ohm(self, port: str) -> ComplexArray:
+        """(F,) one entry of `port_impedance_ohm`, without working out the others."""
+        return impedance_at(self._solved.topology, self._solved.flows, port, self._part)
 
     @property
     def harness_ports(self) -> tuple[str, ...]:
@@ -232,7 +237,11 @@ class Solved:
 
     @cached_property
     def antenna_share(self) -> Array:
-        return _frozen(self._power[..., self._antenna_edge, :] * self._antenna_sign)
+        flows, at = self.flows, self._antenna_edge
+        scale = flows.scale[..., at, :]
+        share = _real_product(flows.v[..., at, :], flows.i[..., at, :]) * _real_product(scale, scale)
+        share *= self._antenna_sign / self.radio.power_w
+        return _frozen(share)
 
     @cached_property
     def _power(self) -> Array:
@@ -307,18 +316,8 @@ class Solved:
 
     @cached_property
     def port_impedance(self) -> dict[str, ComplexArray]:
-        """(F,) by port: V/I from near to far."""
-        v, i = self.flows.v, self.flows.i
-        with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
-            z = v / i
-        if not i.all():
-            z[i == 0] = np.inf
-        rows = self._rows(_frozen(z))
-        unknown = _frozen(np.full(rows[0].shape, complex(np.nan, np.nan)))
-        found = {}
-        for port, (edge, _, far) in self.topology.ports.items():
-            found[port] = rows[edge] if far > 0 else unknown if far == 0 else _turned(rows[edge])
-        return found
+        """(F,) by port, for all ports."""
+        return all_impedances(self.topology, self.flows)
 
     def _network_at(self, part: slice) -> Network:
         return network_of(self.plan, self.topology, self.values, self.frequency_hz[part])
@@ -357,13 +356,6 @@ class Solved:
             at, f = self.frequency_hz.size - 1, float(self.frequency_hz[-1])
             found = self._swells[points] = swells_of(self.plan, self.topology, self.flows, at, f, points)
         return found
-
-
-def _turned(z_ohm: ComplexArray) -> ComplexArray:
-    """The impedance for the current's other direction; an open stays an open."""
-    turned: ComplexArray = np.where(np.isinf(z_ohm), z_ohm, -z_ohm)
-    turned.flags.writeable = False
-    return turned
 
 
 def _real_product(a: ComplexArray, b: ComplexArray) -> Array:

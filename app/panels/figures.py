@@ -143,7 +143,7 @@ def _available_w(plan: Plan) -> float:
 
 
 def _impedance(answer: Answer, name: str, port: Port, meaning: str = "") -> Row:
-    return Row(name, format_impedance(complex(answer.mark.port_impedance_ohm[str(port)][0])), meaning)
+    return Row(name, format_impedance(complex(answer.mark.impedance_ohm(str(port))[0])), meaning)
 
 
 def _vswr(return_loss_db: float) -> str:

@@ -140,7 +140,7 @@ class SmithPlot(Plot):
             if part_id in parts:
                 ports.setdefault(part_id, entry_port(answer, part_id, parts[part_id]))
         for part_id, port in ports.items():
-            impedance, at_mark = answer.port_impedance_ohm[port], answer.mark.port_impedance_ohm[port]
+            impedance, at_mark = answer.impedance_ohm(port), answer.mark.impedance_ohm(port)
             gamma, dot = (reflection(z, plan.reference_ohm) for z in (impedance, at_mark))
             name = ink.short_name(names.get(part_id, part_id))
             colour = self.look.impedance[1] if port == radio else self._colour(plan, part_id)
@@ -191,7 +191,7 @@ def entry_port(answer: Answer, part_id: str, ports: int) -> str:
     """The port through which the wave enters a part: where the current from near to far flows into it; else port 1."""
     mark = answer.mark
     for port in (f"{part_id}:{number}" for number in range(1, ports + 1)):
-        z_ohm = mark.port_impedance_ohm[port][0]
+        z_ohm = mark.impedance_ohm(port)[0]
         if np.isfinite(z_ohm) and (mark.voltage_v(port)[0] * (z_ohm * mark.current_a(port)[0]).conjugate()).real > 0:
             return port
     return f"{part_id}:1"
