@@ -103,7 +103,10 @@ class Figures:
     @cached_property
     def port_impedance_ohm(self) -> Mapping[str, ComplexArray]:
         """(F,) by port: V/I from near to far; inf where I = 0, nan where the radio does not reach."""
-        return MappingProxyType({key: z[..., self._part] for key, z in self._solved.port_impedance.items()})
+        solved = self._solved
+        if self.frequency_hz.size == 1 and "port_impedance" not in solved.__dict__:
+            return MappingProxyType(all_impedances(solved.topology, solved.flows, self._part))
+        return MappingProxyType({key: z[..., self._part] for key, z in solved.port_impedance.items()})
 
     def impedance_ohm(self, port: str) -> ComplexArray:
         """(F,) one entry of `port_impedance_ohm`, without working out the others."""
@@ -224,22 +227,28 @@ class Solved:
         return tuple(f"{self.plan.parts[n].id}:1" for n in self.terminals)
 
     @cached_property
+    def _at_antennas(self) -> tuple[ComplexArray, ComplexArray, ComplexArray]:
+        """(N, F) scale, v and i at the antennas' edges."""
+        flows, at = self.flows, self._antenna_edge
+        return flows.scale[..., at, :], flows.v[..., at, :], flows.i[..., at, :]
+
+    @cached_property
     def antenna_current_a(self) -> ComplexArray:
-        at = self._antenna_edge
-        current = self.flows.scale[..., at, :] * self.flows.i[..., at, :]
+        scale, _, i = self._at_antennas
+        current = scale * i
         current.view(float)[...] *= self._antenna_sign
         return _frozen(current)
 
     @cached_property
     def antenna_voltage_v(self) -> ComplexArray:
-        at = self._antenna_edge
-        return _frozen(self.flows.scale[..., at, :] * self.flows.v[..., at, :])
+        scale, v, _ = self._at_antennas
+        return _frozen(scale * v)
 
     @cached_property
     def antenna_share(self) -> Array:
-        flows, at = self.flows, self._antenna_edge
-        scale = flows.scale[..., at, :]
-        share = _real_product(flows.v[..., at, :], flows.i[..., at, :]) * _real_product(scale, scale)
+        scale, v, i = self._at_antennas
+        share = _real_product(v, i)
+        share *= _real_product(scale, scale)
         share *= self._antenna_sign / self.radio.power_w
         return _frozen(share)
 
@@ -269,10 +278,10 @@ class Solved:
         if not self.antennas:
             return _frozen(np.zeros(self.reflected_share.shape))
         wanted = np.array([a.target.amplitude for *_, a in self.antennas])[:, None]
+        size = np.abs(self.antenna_current_a) / wanted
         with np.errstate(divide="ignore", invalid="ignore"):
-            level = np.log10(np.abs(self.antenna_current_a) / wanted)
-            least = level.min(axis=-2)
-            spread = 20 * (level.max(axis=-2) - least)
+            least = np.log10(size.min(axis=-2))
+            spread = 20 * (np.log10(size.max(axis=-2)) - least)
         spread[np.isneginf(least)] = np.inf
         return _frozen(spread)
 
@@ -317,7 +326,7 @@ class Solved:
     @cached_property
     def port_impedance(self) -> dict[str, ComplexArray]:
         """(F,) by port, for all ports."""
-        return all_impedances(self.topology, self.flows)
+        return all_impedances(self.topology, self.flows, slice(None))
 
     def _network_at(self, part: slice) -> Network:
         return network_of(self.plan, self.topology, self.values, self.frequency_hz[part])
@@ -354,7 +363,7 @@ class Solved:
         found = self._swells.get(points)
         if found is None:
             at, f = self.frequency_hz.size - 1, float(self.frequency_hz[-1])
-            found = self._swells[points] = swells_of(self.plan, self.topology, self.flows, at, f, points)
+            found = self._swells[points] = swells_of(self.plan, self.topology, self.values, self.flows, at, f, points)
         return found
 
 

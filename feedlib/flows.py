@@ -175,12 +175,14 @@ def _waves(plan: Plan, part: int, line: int, table: LineTable, frequency_hz: Arr
 
 def end_states(network: Network, taken_off: Collection[int] = (), reference_ohm: float = 1.0) -> ArrayState:
     """(v, i), each (N, F), of what the plan has at its ends; parts in `taken_off` are replaced by the reference."""
-    v = np.ones((len(network.topology.ends), network.frequency_hz.size), complex)
-    i = np.zeros_like(v)
-    for row, part in enumerate(network.topology.ends):
-        if part in taken_off:
-            v[row], i[row] = reference_ohm, 1
-        elif part != OPEN:
+    ends = network.topology.ends
+    v: ComplexArray = np.ones((len(ends), network.frequency_hz.size), complex)
+    i: ComplexArray = np.zeros_like(v)
+    off = [row for row, part in enumerate(ends) if part in taken_off]
+    if off:
+        v[off], i[off] = reference_ohm, 1
+    for row, part in enumerate(ends):
+        if part != OPEN and part not in taken_off:
             end = network.plan.parts[part].part
             assert isinstance(end, End | Measured)
             v[row], i[row] = end.state(network.frequency_hz)

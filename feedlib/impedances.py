@@ -15,9 +15,9 @@ def impedance_at(topology: Topology, flows: Flows, port: str, part: slice) -> Co
     return _impedance(flows.v[..., edge, part], flows.i[..., edge, part], far)
 
 
-def all_impedances(topology: Topology, flows: Flows) -> dict[str, ComplexArray]:
-    """(F,) by port, for all ports."""
-    rows = list(np.moveaxis(_impedance(flows.v, flows.i, 1), -2, 0))
+def all_impedances(topology: Topology, flows: Flows, part: slice) -> dict[str, ComplexArray]:
+    """(F,) by port, for all ports, at some of the frequencies."""
+    rows = list(np.moveaxis(_impedance(flows.v[..., part], flows.i[..., part], 1), -2, 0))
     unknown = _impedance(rows[0], rows[0], 0)
     return {
         port: rows[edge] if far > 0 else unknown if far == 0 else _turned(rows[edge])

@@ -21,15 +21,15 @@ def solve(plan: Plan, topology: Topology | None = None) -> Answer:
     """
     radio = _only_radio(plan)
     grid_hz, band = plan.grid_hz(), plan.band
-    frequency_hz = np.concatenate(
-        [grid_hz, [band.start_hz, band.stop_hz], [c.hz for c in plan.channels], [band.marked_hz]]
-    )
+    rest_hz = [band.start_hz, band.stop_hz, *(c.hz for c in plan.channels), band.marked_hz]
+    frequency_hz = np.concatenate([grid_hz, rest_hz])
     frequency_hz.flags.writeable = False
     _refuse_uncovered(plan, frequency_hz)
     _refuse_missing_cables(plan)
     if topology is None or not topology.fits(plan):
         topology = compile_plan(plan)
-    if topology.has_loops or sum(is_short(p.part) for p in plan.parts) > 1:
+    # Two shorts side by side leave no state, which shows where the radio drives them; elsewhere they are looked for.
+    if topology.has_loops or (len(topology.roots) > 1 and sum(is_short(p.part) for p in plan.parts) > 1):
         refuse_undetermined(plan)
     values = line_values(plan, topology)
     flows, network = drive_in_slices(plan, topology, values, frequency_hz, radio)

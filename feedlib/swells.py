@@ -5,7 +5,7 @@ from __future__ import annotations
 import numpy as np
 
 from feedlib.conventions import Array, ComplexArray
-from feedlib.flows import Flows
+from feedlib.flows import Flows, LineValues
 from feedlib.parts import Coax
 from feedlib.plan import Plan
 from feedlib.topology import Topology
@@ -15,37 +15,38 @@ Swell = tuple[Array, ComplexArray, complex]
 
 
 def swells_of(
-    plan: Plan, topology: Topology, flows: Flows, at: int, frequency_hz: float, points: int
+    plan: Plan, topology: Topology, values: LineValues, flows: Flows, at: int, frequency_hz: float, points: int
 ) -> dict[str, Swell]:
     """The swell of each coax that the radio reaches, by id; the entry is the side nearer the radio.
 
     V(x) = A e^(-gamma x) + B e^(-gamma (l - x)) with the forward wave A at the entry and the backward wave B at the
     far end (Pozar, Microwave Engineering, 4th ed., sec. 2.7), so both factors decay and no loss overflows.
     """
-    names, planes, entry_first, lines = [], [], [], []
-    for index, placed in enumerate(plan.parts):
-        if isinstance(placed.part, Coax):
+    names, rows, planes, entry_first = [], [], [], []
+    for row, (index, number) in enumerate(topology.lines):
+        placed = plan.parts[index]
+        if isinstance(placed.part, Coax) and number == placed.part.main_line:
             _, sign, far = topology.ports[f"{placed.id}:1"]
             if far:
-                number = placed.part.main_line
-                first, second = topology.line_planes.get((index, number), topology.planes[index])
+                first, second = topology.line_planes.get((index, number)) or topology.planes[index]
                 names.append(placed.id)
-                entry_first.append(sign == far)
+                rows.append(row)
                 planes.append((*first, *second) if sign == far else (*second, *first))
-                lines.append(placed.part.lines(plan.cables[placed.part.cable])[number])
+                entry_first.append(sign == far)
     if not names:
         return {}
     entry, entry_sign, exit_, exit_sign = np.array(planes).T
-    z0_ohm, delay_s, skin_np, dielectric_np, _ = np.array(lines).T
+    columns = (values.z0_ohm, values.delay_s, values.skin_np, values.dielectric_np)
+    z0_ohm, delay_s, skin_np, dielectric_np = np.array(columns)[:, values.row][:, rows]
     mhz = frequency_hz / 1e6
     gamma_l = skin_np * np.sqrt(mhz) + dielectric_np * mhz + 2j * np.pi * frequency_hz * delay_s
     scale, v, i = flows.scale[:, at], flows.v[:, at], flows.i[:, at]
     forward = 0.5 * scale[entry] * (v[entry] + z0_ohm * i[entry] * entry_sign)
     backward = 0.5 * scale[exit_] * (v[exit_] + z0_ohm * i[exit_] * exit_sign)
-    x = np.linspace(0, 1, points)
+    x = np.arange(points) / (points - 1)
     fall = np.exp(-gamma_l[:, None] * x)
     along = forward[:, None] * fall + backward[:, None] * fall[:, ::-1]
     return {
-        name: (x, row if straight else row[::-1], complex(wave))
-        for name, row, straight, wave in zip(names, along, entry_first, forward, strict=True)
+        name: (x, row if straight else row[::-1], wave)
+        for name, row, straight, wave in zip(names, along, entry_first, forward.tolist(), strict=True)
     }

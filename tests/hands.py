@@ -76,21 +76,22 @@ def same_answer(store: Store) -> None:
 
 
 @contextmanager
-def answering(act: Callable[[QWidget], None]) -> Iterator[None]:
-    """Do something with the menu or the dialog that comes up meanwhile, as soon as it is there; one has to come."""
-    timer = QTimer()
+def answering(*acts: Callable[[QWidget], None]) -> Iterator[None]:
+    """Do something with each menu or dialog that comes up meanwhile, as soon as it is there; all have to come."""
+    timer, waiting = QTimer(), list(acts)
+    last: list[QWidget | None] = [None]
 
     def look() -> None:
         asked = QApplication.activePopupWidget() or QApplication.activeModalWidget()
-        if asked is not None:
-            timer.stop()
-            act(asked)
+        if asked is not None and waiting and asked is not last[0]:
+            last[0] = asked
+            waiting.pop(0)(asked)
 
     timer.timeout.connect(look)
     timer.start(0)
     try:
         yield
-        assert not timer.isActive(), "nothing was asked"
+        assert not waiting, f"{len(waiting)} of {len(acts)} questions were not asked"
     finally:
         timer.stop()
 
@@ -170,6 +171,7 @@ class Hands:
 
     def key(self, key: Qt.Key, keys=PLAIN) -> None:
         """Press a key in the window, as the keyboard does: shortcuts come first."""
+        self.view.window().activateWindow()  # what a window manager does after a dialog
         QTest.keyClick(self.handle, key, keys)
         QApplication.processEvents()
 

@@ -17,7 +17,7 @@ from app.editing.wording import format_impedance
 from app.look import Look
 from app.store import Store
 from app.units import units
-from feedlib import Answer, Plan
+from feedlib import Plan
 from feedlib.parts.base import Junction, ManyPort, Part
 from feedlib.parts.radio import Radio
 from feedlib.plan import Join, Placed, Port
@@ -132,14 +132,15 @@ class BenchScene(QGraphicsScene):
         answer, plan = self.store.answer, self.store.plan
         wanted: dict[Join, str] = {}
         if answer is not None:
+            seen = answer.mark.port_impedance_ohm
             kinds = {p.id: p.part for p in plan.parts}
             few = len(plan.joins) <= MOST_FLAGS
             for join in plan.joins:
                 busy = any(isinstance(kinds[p.part], Junction | ManyPort | Radio) for p in join)
                 if (few and busy) or any(p.part in self.store.selected for p in join):
-                    words = _seen_at(answer, port_key(join[0]))
-                    if words:
-                        wanted[join] = words
+                    z = seen.get(port_key(join[0]))  # None where the answer is behind the plan
+                    if z is not None and not np.isnan(z[0]):
+                        wanted[join] = format_impedance(complex(z[0]))
         for join in [j for j in self.flags if j not in wanted]:
             self.removeItem(self.flags.pop(join))
         for join, words in wanted.items():
@@ -212,15 +213,6 @@ class BenchScene(QGraphicsScene):
             painter.drawPoints(
                 [QPointF((left + x) * step, (top + y) * step) for x in range(columns) for y in range(rows)]
             )
-
-
-def _seen_at(answer: Answer, port: str) -> str:
-    """What the wave sees at a port at the mark, in words; empty where the radio or the answer does not reach."""
-    try:
-        z_ohm = complex(answer.mark.impedance_ohm(port)[0])
-    except KeyError:  # the answer is behind the plan, and this port is new
-        return ""
-    return "" if np.isnan(z_ohm) else format_impedance(z_ohm)
 
 
 def _dressed(plan: Plan) -> tuple[object, ...]:

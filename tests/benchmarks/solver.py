@@ -30,7 +30,7 @@ def shown(answer: Answer) -> None:
     """Ask for what the window shows: verdicts, plots' curves, dials, flags, swells."""
     _ = answer.verdicts, answer.return_loss_db, answer.antenna_current_a, answer.impedance_ohm("radio:1")
     mark = answer.mark
-    _ = mark.antenna_share, mark.antenna_current_a, [mark.impedance_ohm(str(a)) for a, _ in answer.plan.joins]
+    _ = mark.antenna_share, mark.antenna_current_a, mark.port_impedance_ohm
     for placed in answer.plan.parts:
         if isinstance(placed.part, Coax):
             answer.swell(placed.id)
