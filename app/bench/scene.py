@@ -18,7 +18,7 @@ from app.look import Look
 from app.store import Store
 from app.units import units
 from feedlib import Plan
-from feedlib.parts.base import Junction, ManyPort, Part
+from feedlib.parts.base import Junction, ManyPort
 from feedlib.parts.radio import Radio
 from feedlib.plan import Join, Placed, Port
 
@@ -38,7 +38,6 @@ class BenchScene(QGraphicsScene):
         self.flags: dict[Join, FlagItem] = {}
         self.selected_join: Join | None = None
         self._dials: dict[str, Dial] = {}
-        self._answered: dict[str, type[Part]] = {}
         self._unit = units().length
         self.setItemIndexMethod(QGraphicsScene.ItemIndexMethod.NoIndex)
         store.plan_changed.connect(self._follow_plan)
@@ -98,7 +97,6 @@ class BenchScene(QGraphicsScene):
         """Repaint everything from the store's answer."""
         answer = self.store.answer
         self._dials = dials_of(answer)
-        self._answered = {} if answer is None else {p.id: type(p.part) for p in answer.plan.parts}
         self._show_all()
         self._mark_troubles()
         self._show_flags()
@@ -110,10 +108,8 @@ class BenchScene(QGraphicsScene):
 
     def _shown(self, placed: Placed) -> Shown:
         store = self.store
-        known = self._answered.get(placed.id) is type(placed.part)
-        answer = store.answer if known else None  # it may be behind the plan for a moment
-        dial = self._dials.get(placed.id)
-        return Shown(placed, store.plan, answer, self.look, store.hovered == placed.id, dial, self._unit)
+        hovered, dial = store.hovered == placed.id, self._dials.get(placed.id)
+        return Shown(placed, store.plan, store.answer, self.look, hovered, dial, self._unit)
 
     def _mark_troubles(self) -> None:
         stopped = {p.part_id for p in self.store.problems if p.stops} | {self.store.culprit}

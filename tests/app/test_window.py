@@ -150,8 +150,8 @@ def test_names_in_menus_and_titles_are_plain_and_short(whole: tuple[Window, Hand
     assert "\n" not in window.windowTitle()
     assert window.windowTitle().replace("[*][*]", "").count("[*]") == 1
     assert len(window.windowTitle()) < 150
-    window.resize(1100, 700)
-    assert window.width() == 1100
+    QApplication.processEvents()
+    assert window.minimumSizeHint().width() <= 1100
     hands.store.edit("Title", edits.retitled(hands.store.plan, title=""))
     assert window.title.text().startswith("Untitled")
 
