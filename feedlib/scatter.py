@@ -159,8 +159,11 @@ def joined(blocks: ComplexArray, inner: list[tuple[int, int]], outer: list[int])
     return s, inside
 
 
-def renormalised(s: ComplexArray, from_ohm: Array, to_ohm: float) -> ComplexArray:
+def renormalised(s: ComplexArray, from_ohm: Array, to_ohm: float | Array) -> ComplexArray:
     """S (..., P, P, F) at another real reference, without a detour over impedances, which need not exist.
+
+    from_ohm : (P,); to_ohm : one for all ports, or (P,). Undetermined where a port is the exact negative of its new
+    reference.
 
     S' = D^-1 (S - G)(1 - G S)^-1 D with G = (to - from)/(to + from), D = 2 sqrt(from to)/(from + to) (diagonal);
     Kurokawa 1965 for real references.

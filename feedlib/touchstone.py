@@ -96,26 +96,6 @@ def interpolate(data: NetworkData, frequency_hz: Array) -> ComplexArray:
     return s
 
 
-def renormalise(s: ComplexArray, from_ohm: float | Array, to_ohm: float | Array) -> ComplexArray:
-    """S (P, P, F) at the references ``to_ohm`` of data at ``from_ohm``; both real, one for all ports or (P,).
-
-    With g = (to - from)/(to + from) and k = 1/sqrt(1 - g^2) of each port, the waves are a' = k (a - g b) and
-    b' = k (b - g a), so S' = k (S - g)(1 - g S)^-1 k^-1 (Marks and Williams, J. Res. NIST 97, 1992, p. 533,
-    for real references). Neither Z nor Y is formed: opens and shorts are ordinary values.
-    """
-    ports = len(s)
-    old_ohm, new_ohm = np.broadcast_to(from_ohm, ports), np.broadcast_to(to_ohm, ports)
-    g = np.diag((new_ohm - old_ohm) / (new_ohm + old_ohm))
-    k = (new_ohm + old_ohm) / (2 * np.sqrt(new_ohm * old_ohm))
-    transposed = s.transpose(2, 1, 0)
-    try:
-        turned = np.linalg.solve(np.eye(ports) - transposed @ g, transposed - g)
-    except np.linalg.LinAlgError:
-        raise TouchstoneError("no port may be the exact negative of its wanted reference resistance") from None
-    renormalised: ComplexArray = turned.transpose(2, 1, 0) * (k[:, np.newaxis] / k)[..., np.newaxis]
-    return renormalised
-
-
 def _read_version_1(lines: Sequence[Line], ports_in_name: int | None) -> NetworkData:
     options = read_options(*lines[0])
     if not ports_in_name:
