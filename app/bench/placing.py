@@ -11,15 +11,15 @@ from PySide6.QtWidgets import QWidget
 
 from app.bench.pictures import PICTURES
 from app.editing import edits
+from app.editing.measured_file import read_touchstone_file
 from app.reporting import say
 from app.store import Store
 from feedlib import FeedError, Plan
-from feedlib.parts import Antenna, AntennaImpedance, Measured, Part, TouchstoneText
+from feedlib.parts import Antenna, AntennaImpedance, Measured, Part
 from feedlib.plan import Join, Port
 
 APART = 56.0
 """Room between the bodies of two parts that are put side by side."""
-MAX_FILE_BYTES = 100_000_000
 
 
 class Entry(Protocol):
@@ -48,19 +48,16 @@ class Placing(QObject):
         plan = self.store.plan
         antenna = plan.placed(onto) if onto is not None and isinstance(plan.placed(onto).part, Antenna) else None
         try:
-            if path.stat().st_size > MAX_FILE_BYTES:
-                raise FeedError(f"the file has more than {MAX_FILE_BYTES / 1e6:.0f} MB")
-            file = TouchstoneText(name=path.name, text=path.read_text(encoding="utf-8", errors="replace"))
-            if antenna is not None and file.data.ports == 1:
-                changed = edits.changed_part(plan, antenna.id, impedance=AntennaImpedance(touchstone=file))
-                self.store.edit(f"Measured impedance of {antenna.name}", changed)
-                self.store.select((antenna.id,))
-                return
-        except (OSError, FeedError) as error:
-            reason = getattr(error, "strerror", None) or getattr(error, "reason", None) or error
-            say(self.window, "The file cannot be used", f"{path.name}: {reason}")
+            file = read_touchstone_file(path)
+        except FeedError as error:
+            say(self.window, "The file cannot be used", str(error))
             return
-        self._put(plan, Measured(touchstone=file), at, join)
+        if antenna is not None and file.data.ports == 1:
+            changed = edits.changed_part(plan, antenna.id, impedance=AntennaImpedance(touchstone=file))
+            self.store.edit(f"Measured impedance of {antenna.name}", changed)
+            self.store.select((antenna.id,))
+        else:
+            self._put(plan, Measured(touchstone=file), at, join)
 
     def put_behind(self, key: str, middle: QPointF) -> None:
         """Put a new part behind the selected one and join it there; in the middle when none is selected."""

@@ -20,13 +20,13 @@ from app.bench.items import PartItem
 from app.bench.pictures.coax import WIDEST
 from app.bench.scene import BenchScene
 from app.editing import edits
+from app.editing.drags import PART_MIME
 from app.editing.wording import wheel_step_m
 from app.look import Look
 from app.store import Store
 from feedlib.parts import Coax
 from feedlib.plan import Join, Port
 
-PART_MIME = "application/x-feedwright-part"
 SMALLEST, LARGEST = 0.08, 4.0
 WALKS = {
     Qt.Key.Key_Left: "left",

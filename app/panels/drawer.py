@@ -16,12 +16,12 @@ from PySide6.QtGui import (
 )
 from PySide6.QtWidgets import QApplication, QFrame, QPushButton, QScrollArea, QVBoxLayout, QWidget
 
+from app.editing.drags import PART_MIME
 from app.look import Look, font
 from app.panels import part_pictures
 from app.panels.drawer_entries import MEASURED, entries
 from app.panels.style import dress
 
-MIME_TYPE = "application/x-feedwright-part"
 WIDTH, FOLDED_WIDTH = 88, 24
 LINE = 14
 
@@ -117,7 +117,7 @@ class DrawerThing(QWidget):
     def mime(self) -> QMimeData:
         """What a drag of it carries."""
         data = QMimeData()
-        data.setData(MIME_TYPE, self.key.encode())
+        data.setData(PART_MIME, self.key.encode())
         return data
 
     def mousePressEvent(self, event: QMouseEvent) -> None:

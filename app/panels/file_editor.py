@@ -7,34 +7,14 @@ from typing import Any
 
 from PySide6.QtWidgets import QFileDialog, QPushButton
 
+from app.editing.measured_file import read_touchstone_file
 from app.editing.wording import format_frequency
 from app.panels.around import Around
 from app.panels.editors import FieldEditor
 from app.panels.style import set_text
-from feedlib.errors import FeedError, PlanError
-from feedlib.parts import TouchstoneText
+from feedlib.errors import FeedError
 
-LARGEST_BYTES = 64 * 1024 * 1024
 FILES = "Touchstone files (*.s*p *.S*P *.ts *.TS);;All files (*)"
-
-
-def read_touchstone_file(path: Path) -> TouchstoneText:
-    """The text of a Touchstone file, read and checked (FeedError: one sentence)."""
-    try:
-        if path.stat().st_size > LARGEST_BYTES:
-            raise FeedError(f"{path.name} is larger than {LARGEST_BYTES // 1024**2} MB.")
-        data = path.read_bytes()
-    except OSError as error:
-        raise FeedError(f"{path.name} cannot be read: {error.strerror or error}.") from None
-    # Comments of old instruments are in their own alphabets; the figures are ASCII in all of them.
-    try:
-        text = data.decode("utf-8-sig")
-    except UnicodeDecodeError:
-        text = data.decode("latin-1")
-    try:
-        return TouchstoneText(name=path.name, text=text)
-    except PlanError as error:
-        raise FeedError(error.reason.rstrip(".") + ".") from None
 
 
 class FileEditor(FieldEditor):

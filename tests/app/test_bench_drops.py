@@ -10,8 +10,8 @@ from PySide6.QtTest import QTest
 from PySide6.QtWidgets import QFileDialog, QMenu, QMessageBox, QWidget
 from pytestqt.qtbot import QtBot
 
-from app.bench.view import PART_MIME
 from app.editing import edits
+from app.editing.drags import PART_MIME
 from app.window import Window
 from feedlib import write_plan
 from feedlib.parts import KINDS, Antenna, Measured
@@ -210,7 +210,10 @@ def test_a_file_that_is_no_data_is_refused_in_one_sentence(
         sentences: list[str] = []
         with answering(lambda box, said=sentences: said.append(read(box))):
             hands.drop(files(path), place)
-        assert sentences[0].startswith("odd.s1p: ")
+        assert len(sentences) == 1
+        assert sentences[0].strip('"').startswith("odd.s1p")
+        assert sentences[0].endswith(".")
+        assert len(sentences[0].splitlines()) == 1
     assert hands.store.plan == plan()
 
 

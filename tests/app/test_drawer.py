@@ -13,8 +13,9 @@ from PySide6.QtWidgets import QApplication
 from pytestqt.qtbot import QtBot
 
 from app.editing import edits
+from app.editing.drags import PART_MIME
 from app.look import DARK, LIGHT
-from app.panels.drawer import MIME_TYPE, PartsDrawer
+from app.panels.drawer import PartsDrawer
 from app.panels.drawer_entries import MEASURED, entries
 from app.panels.part_pictures import PICTURES
 from app.store import Store
@@ -140,7 +141,7 @@ def test_a_drag_carries_the_part(qtbot: QtBot, drawer: PartsDrawer) -> None:
         QApplication.sendEvent(thing, moved)
         drags = thing.findChildren(QDrag)
         assert len(drags) == (1 if x == 60 else 0), "two pixels are no drag"
-    assert drags[0].mimeData().data(MIME_TYPE).data() == b"antenna"
+    assert drags[0].mimeData().data(PART_MIME).data() == b"antenna"
 
 
 def test_the_drawer_folds_away(qtbot: QtBot, drawer: PartsDrawer) -> None:
