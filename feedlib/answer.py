@@ -334,7 +334,10 @@ class Solved:
     @cached_property
     def harness_s(self) -> ComplexArray:
         """(P, P, F)"""
-        return _frozen(harness_s(self._network or self._network_at(slice(None)), self.terminals))
+        reference = self.plan.reference_ohm
+        matched = all(antenna.impedance.fixed_ohm == reference for *_, antenna in self.antennas)
+        looks = self.flows.looks if matched else None
+        return _frozen(harness_s(self._network or self._network_at(slice(None)), self.terminals, looks))
 
     def harness_s_at(self, part: slice) -> ComplexArray:
         """(P, P, F) at some frequencies; made for them alone where all would be too much."""

@@ -286,12 +286,14 @@ def brought_to_one(state: ArrayState) -> Array:
 class Flows:
     """Everything at every edge, driven by the radio: V = scale v, I = scale i, each (..., E + 1, F).
 
-    (v, i) is the state that looks away from the root, which no loss drowns; the last row is zero.
+    (v, i) is the state that looks away from the root, which no loss drowns; the last row is zero. looks : the same
+    with what the way back needs; None where the frequencies were taken in slices.
     """
 
     v: ComplexArray
     i: ComplexArray
     scale: ComplexArray
+    looks: Looks | None
 
 
 def drive(network: Network, radio: Radio) -> Flows:
@@ -332,7 +334,7 @@ def drive(network: Network, radio: Radio) -> Flows:
                 v[..., op.core.inner, :] = (leaving + arriving) * np.sqrt(WAVE_OHM)
                 i[..., op.core.inner, :] = (arriving - leaving) / np.sqrt(WAVE_OHM)
                 scale[..., op.core.inner, :] = 1
-    return Flows(v, i, scale)
+    return Flows(v, i, scale, looks)
 
 
 def put_product(target: ComplexArray, rows: Rows, a: ComplexArray, b: ComplexArray) -> None:
@@ -367,4 +369,5 @@ def drive_in_slices(
         drive(network_of(plan, topology, values, frequency_hz[n : n + step]), radio)
         for n in range(0, frequency_hz.size, step)
     ]
-    return Flows(*(np.concatenate([getattr(f, name) for f in found], axis=-1) for name in ("v", "i", "scale"))), None
+    v, i, scale = (np.concatenate([getattr(f, name) for f in found], axis=-1) for name in ("v", "i", "scale"))
+    return Flows(v, i, scale, None), None

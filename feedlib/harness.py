@@ -18,8 +18,10 @@ from feedlib.topology import BlockOp, ChainOp, JoinBatch, LineBatch, Op, Rows, r
 MAX_BYTES = 2e9
 
 
-def harness_s(network: Network, terminals: Sequence[int]) -> ComplexArray:
+def harness_s(network: Network, terminals: Sequence[int], looks: Looks | None = None) -> ComplexArray:
     """S (..., P, P, F) at the plan's reference; terminals : part indices of the radio and the antennas, in order.
+
+    looks : what edges see with the antennas in place, where these are the reference already; else it is worked out.
 
     SolveError when the array would take more than 2 GB. A terminal tied to nothing has S_kk = 1.
     """
@@ -29,7 +31,7 @@ def harness_s(network: Network, terminals: Sequence[int]) -> ComplexArray:
         raise SolveError(
             f"the harness's S-parameters would take {size / 1e9:.1f} GB; ask for fewer frequencies or antennas"
         )
-    return _Assembly(network, terminals).matrix()
+    return _Assembly(network, terminals, looks).matrix()
 
 
 def bytes_of(ports: int, frequencies: int) -> float:
@@ -45,7 +47,7 @@ class _Assembly:
     turns : from one edge of a join or block to another, the scale's factor.
     """
 
-    def __init__(self, network: Network, terminals: Sequence[int]) -> None:
+    def __init__(self, network: Network, terminals: Sequence[int], looks: Looks | None) -> None:
         self.network, self.topology = network, network.topology
         self.place = {part: n for n, part in enumerate(terminals)}
         self.reference = network.plan.reference_ohm
@@ -53,7 +55,7 @@ class _Assembly:
         self.s = np.empty((*batch, len(terminals), len(terminals), frequencies), complex)
         if len(self.topology.roots) > 1:
             self.s[:] = 0
-        self.away = look_away(network, end_states(network, self.place, self.reference))
+        self.away = looks or look_away(network, end_states(network, self.place, self.reference))
         self.back_v, self.back_i = np.empty_like(self.away.v), np.empty_like(self.away.v)
         self.below: dict[int, tuple[list[int], ComplexArray, ComplexArray | None]] = {}
         self.turns: dict[tuple[int, int], ComplexArray] = {}
@@ -85,7 +87,7 @@ class _Assembly:
         drive = 1 / (v + i)
         self.s[..., rows, rows, :] = (v - i) * drive
         ways = np.empty((*v.shape[:-2], 2, *v.shape[-2:]), complex)
-        ways[..., 0, :, :] = 2 * self.reference
+        ways[..., 0, :, :] = 2 * self.away.v[..., edges, :]
         ways[..., 1, :, :] = drive
         for n, (edge, row) in enumerate(zip(edges, rows, strict=True)):
             self.below[edge] = [row], ways[..., n : n + 1, :], None
