@@ -15,7 +15,8 @@ from PySide6.QtGui import QUndoCommand, QUndoStack
 from app.editing.edits import plain_text
 from app.jobs import Jobs
 from feedlib import Answer, Plan, Problem, SolveError, check, solve
-from feedlib.topology import Topology, compile_plan
+from feedlib.compiler import compile_plan
+from feedlib.topology import Topology
 
 
 class Edit(QUndoCommand):

@@ -21,7 +21,7 @@ from feedlib.harness import MAX_BYTES, bytes_of, harness_s
 from feedlib.impedances import all_impedances, impedance_at
 from feedlib.parts import Antenna, Radio
 from feedlib.plan import Plan
-from feedlib.swells import Swell, swells_of
+from feedlib.swells import Swell, sections_of, swells_of
 from feedlib.topology import Topology
 
 
@@ -366,7 +366,8 @@ class Solved:
         found = self._swells.get(points)
         if found is None:
             at, f = self.frequency_hz.size - 1, float(self.frequency_hz[-1])
-            found = self._swells[points] = swells_of(self.plan, self.topology, self.values, self.flows, at, f, points)
+            sections = self.topology.kept("sections", lambda: sections_of(self.plan, self.topology))
+            found = self._swells[points] = swells_of(sections, self.values, self.flows, at, f, points)
         return found
 
 

@@ -5,12 +5,13 @@ from __future__ import annotations
 import numpy as np
 
 from feedlib.answer import Answer, Solved
+from feedlib.compiler import compile_plan
 from feedlib.conventions import Array
 from feedlib.errors import SolveError, quoted
 from feedlib.flows import drive_in_slices, line_values
 from feedlib.parts import Coax, Radio
 from feedlib.plan import Plan
-from feedlib.topology import Topology, compile_plan
+from feedlib.topology import Topology
 from feedlib.undetermined import is_short, refuse_undetermined
 
 

@@ -9,8 +9,8 @@ import numpy as np
 
 from app.editing.edits import turned_length
 from feedlib import Answer, Plan, solve
+from feedlib.compiler import compile_plan
 from feedlib.parts import Coax, Tee
-from feedlib.topology import compile_plan
 from tests.benchmarks.timing import interleaved, line
 from tests.benchmarks.trees import tree
 

@@ -10,11 +10,11 @@ import pytest
 
 from feedlib import Plan, solve
 from feedlib.answer import Solved
+from feedlib.compiler import compile_plan
 from feedlib.flows import LineValues, drive, line_values, network_of
 from feedlib.harness import harness_s
 from feedlib.parts import Antenna, AntennaImpedance, Coax, Pad, Radio, Splitter, Tee
 from feedlib.plan import Band, Cable, Join, Placed, Port
-from feedlib.topology import compile_plan
 
 FREQUENCY_HZ = np.array([100e6, 140e6, 171e6])
 

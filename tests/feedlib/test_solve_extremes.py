@@ -6,9 +6,9 @@ import numpy as np
 import pytest
 
 from feedlib import SolveError, solve
+from feedlib.compiler import compile_plan
 from feedlib.parts import Coax
 from feedlib.plan import Port
-from feedlib.topology import compile_plan
 from tests import oracle
 from tests.plans import Sketch, touchstone
 
