@@ -185,6 +185,9 @@ class Answer(Figures):
         return self._solved.swells(points).get(part_id)
 
 
+TINY = 1e-280
+"""Squares below this lose digits."""
+
 JUDGED: dict[str, bool] = {
     "return_loss_db": True,
     "amplitude_balance_db": False,
@@ -278,11 +281,15 @@ class Solved:
         if not self.antennas:
             return _frozen(np.zeros(self.reflected_share.shape))
         wanted = np.array([a.target.amplitude for *_, a in self.antennas])[:, None]
+        square = _real_product(self.antenna_current_a, self.antenna_current_a) / wanted**2
+        least = square.min(axis=-2)
+        if (least > TINY).all():
+            return _frozen(10 * np.log10(square.max(axis=-2) / least))
         size = np.abs(self.antenna_current_a) / wanted
         with np.errstate(divide="ignore", invalid="ignore"):
-            least = np.log10(size.min(axis=-2))
-            spread = 20 * (np.log10(size.max(axis=-2)) - least)
-        spread[np.isneginf(least)] = np.inf
+            level = np.log10(size)
+            spread = 20 * (level.max(axis=-2) - level.min(axis=-2))
+        spread[(size == 0).any(axis=-2)] = np.inf
         return _frozen(spread)
 
     @cached_property

@@ -15,7 +15,7 @@ from feedlib.graph import OPEN, Element, Graph, Piece, blocks_of, graph_of, join
 from feedlib.parts import Antenna, Radio
 from feedlib.parts.base import Junction, Lines, TwoPort
 from feedlib.plan import Plan
-from feedlib.topology import BlockOp, ChainOp, Core, JoinBatch, LineBatch, Op, Plane, Topology, run, shape_of
+from feedlib.topology import BlockOp, ChainOp, Core, JoinBatch, LineBatch, Op, Plane, Topology, run
 
 RESCALE_AFTER = 8.0
 LINE_WEIGHT = 0.25
@@ -214,7 +214,7 @@ class _Compiler:
             planes[self.graph.elements[element].part].append(plane)
             ports[f"{part_id}:{n}"] = edge, sign, 0 if edge not in reached else -1 if edge in against else 1
         return Topology(
-            shape=shape_of(plan),
+            parts=plan.parts,
             joins=plan.joins,
             ops=ops,
             ends=[part for _, part in self.ends],

@@ -8,6 +8,7 @@ from __future__ import annotations
 
 from collections.abc import Collection
 from dataclasses import dataclass
+from typing import cast
 
 import numpy as np
 
@@ -183,8 +184,7 @@ def end_states(network: Network, taken_off: Collection[int] = (), reference_ohm:
         v[off], i[off] = reference_ohm, 1
     for row, part in enumerate(ends):
         if part != OPEN and part not in taken_off:
-            end = network.plan.parts[part].part
-            assert isinstance(end, End | Measured)
+            end = cast("End | Measured", network.plan.parts[part].part)
             v[row], i[row] = end.state(network.frequency_hz)
     return v, i
 

@@ -17,7 +17,8 @@ def impedance_at(topology: Topology, flows: Flows, port: str, part: slice) -> Co
 
 def all_impedances(topology: Topology, flows: Flows, part: slice) -> dict[str, ComplexArray]:
     """(F,) by port, for all ports, at some of the frequencies."""
-    rows = list(np.moveaxis(_impedance(flows.v[..., part], flows.i[..., part], 1), -2, 0))
+    z_ohm = _impedance(flows.v[..., part], flows.i[..., part], 1)
+    rows = list(z_ohm if z_ohm.ndim == 2 else np.moveaxis(z_ohm, -2, 0))
     unknown = _impedance(rows[0], rows[0], 0)
     return {
         port: rows[edge] if far > 0 else unknown if far == 0 else _turned(rows[edge])

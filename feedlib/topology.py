@@ -15,7 +15,7 @@ import numpy as np
 from feedlib.conventions import Index
 from feedlib.graph import Element
 from feedlib.parts.base import Lines
-from feedlib.plan import Join, Plan
+from feedlib.plan import Join, Placed, Plan
 
 Rows = slice | Index
 Plane = tuple[int, int]
@@ -84,7 +84,6 @@ class BlockOp:
 
 Op = LineBatch | JoinBatch | ChainOp | BlockOp
 T = TypeVar("T")
-Shape = tuple[tuple[str, type, int, int], ...]
 
 
 @dataclass(frozen=True, slots=True)
@@ -99,7 +98,7 @@ class Topology:
     that is one of several of its part.
     """
 
-    shape: Shape
+    parts: tuple[Placed, ...]
     joins: tuple[Join, ...]
     ops: list[Op]
     ends: list[int]
@@ -125,14 +124,17 @@ class Topology:
 
     def fits(self, plan: Plan) -> bool:
         """Whether the plan has this very topology, so that only values differ."""
-        return (plan.joins is self.joins or plan.joins == self.joins) and shape_of(plan) == self.shape
+        return (
+            len(plan.parts) == len(self.parts)
+            and all(a is b or _shape(a) == _shape(b) for a, b in zip(plan.parts, self.parts, strict=True))
+            and (plan.joins is self.joins or plan.joins == self.joins)
+        )
 
 
-def shape_of(plan: Plan) -> Shape:
-    """What of the parts the topology depends on."""
-    return tuple(
-        (p.id, type(p.part), p.part.ports, p.part.line_count if isinstance(p.part, Lines) else 0) for p in plan.parts
-    )
+def _shape(placed: Placed) -> tuple[str, type, int, int]:
+    """What of a part the topology depends on."""
+    part = placed.part
+    return placed.id, type(part), part.ports, part.line_count if isinstance(part, Lines) else 0
 
 
 def run(numbers: list[int]) -> Rows:
