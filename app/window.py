@@ -201,11 +201,16 @@ class Window(QMainWindow):
     def ask_frequency(self) -> None:
         """Move the whole plan to another frequency, with all electrical lengths kept."""
         old = format_frequency(self.store.plan.band.marked_hz)
-        words, given = QInputDialog.getText(self, "Move to another frequency", "The mark's new frequency:", text=old)
+        words, given = QInputDialog.getText(
+            self,
+            "Move to another frequency",
+            "The mark's new frequency. All electrical lengths are kept, so every cut changes:",
+            text=old,
+        )
         if not given:
             return
         try:
-            plan, left = moved_to_frequency(self.store.plan, read_quantity(words, unit="Hz"))
+            plan, left = moved_to_frequency(self.store.plan, read_quantity(words, unit="Hz", bare_unit="MHz"))
         except (EntryError, PlanError) as error:
             say(self, "The plan is not moved", f"{error}")
             return
@@ -310,7 +315,8 @@ class Window(QMainWindow):
 
     def _tell_plan(self) -> None:
         plan = self.store.plan
-        channels = f" · {len(plan.channels)} channels" if plan.channels else ""
+        count = len(plan.channels)
+        channels = f" · {count} channel{'s' if count > 1 else ''}" if count else ""
         self.band.setText(f"{plan.band.start_hz / 1e6:.9g} to {plan.band.stop_hz / 1e6:.9g} MHz{channels}")
         empty = len(plan.parts) <= 1
         self.hint.setText(

@@ -52,7 +52,7 @@ class Spec:
             bounds.append(f"at least {self.low:g}")
         if self.high is not None:
             bounds.append(f"at most {self.high:g}")
-        unit = f" {self.unit}" if self.unit else ""
+        unit = f" in {self.unit}" if self.unit else ""
         return f"a number{unit}, " + " and ".join(bounds) if bounds else f"a number{unit}"
 
 

@@ -16,6 +16,7 @@ from app.bench.scene import BenchScene
 from app.editing import edits
 from app.editing.wording import format_length, wheel_step_m
 from app.look import font
+from feedlib import Plan
 from feedlib.conventions import guided_wavelength_m
 from feedlib.parts import Coax
 from feedlib.plan import Join, Port
@@ -304,20 +305,22 @@ class TurnEnd(Gesture):
         length_m = round(degrees / 360 * guided_wavelength_m(mark_hz, factor) / step_m) * step_m
         plan = edits.turned_length(self.plan, [self.part_id], length_m - part.length_m)
         name = self.plan.placed(self.part_id).name
-        self.store.edit(f"Turn {name}", plan, merge=f"end {id(self)}")
+        self._put(f"Turn {name}", plan)
         now = self.store.plan.placed(self.part_id).part
         assert isinstance(now, Coax)
         length = format_length(now.length_m, "mm", frequency_hz=None, velocity_factor=None)
         self.words.setText(f"{length}  {electrical_deg(now, cable, mark_hz):.1f}°")
         self.words.setPos(at + QPointF(16, -26))
 
+    def _put(self, text: str, plan: Plan) -> None:
+        self.store.edit(text, plan, merge=f"end {id(self)}")
+
     def release(self, at: QPointF, screen: QPoint) -> None:
         self.scene.removeItem(self.words)
 
     def cancel(self) -> None:
         self.drop()
-        if self.store.plan != self.plan:
-            self.store.stack.undo()
+        self._put("", self.plan)  # back at its start the act is gone, with nothing to redo
 
     def drop(self) -> None:
         self.scene.removeItem(self.words)

@@ -101,10 +101,9 @@ class PartItem(QGraphicsItem):
     def _frame(self, grown: float) -> QRectF:
         """What a selected part's frame holds: its shape and its words."""
         shape = self.body.adjusted(-10, -12, 10, 12)
-        if self.shown.placed.part.KIND == "radio":
-            return shape
         detail = PICTURES[self.shown.placed.part.KIND].detail(self.shown)
-        lines = [(self.shown.name, True), (f"✓ {detail}", False)] if detail else [(self.shown.name, True)]
+        lines = [] if self.shown.placed.part.KIND == "radio" else [(self.shown.name, True)]
+        lines += [(f"✓ {detail}", False)] if detail else []
         width = max(QFontMetricsF(font("small", bold=bold)).horizontalAdvance(words) for words, bold in lines)
         width = min(grown * width, max(230.0, self.body.width() + 90)) / 2 + 6
         height = TEXT_GAP + grown * TEXT_LINE * len(lines) + 4

@@ -62,8 +62,14 @@ class Placing(QObject):
     def put_behind(self, key: str, middle: QPointF) -> None:
         """Put a new part behind the selected one and join it there; in the middle when none is selected."""
         plan, part = self.entries[key].make(self.store.plan)
-        port = self._free_port(self.store.selected[0]) if len(self.store.selected) == 1 else None
-        if port is None:
+        chosen = self.store.selected[0] if len(self.store.selected) == 1 else None
+        port = self._free_port(chosen) if chosen is not None else None
+        join = self._join_behind(chosen) if chosen is not None and port is None and part.ports >= 2 else None
+        if join is not None:
+            places = [self.store.plan.placed(p.part).at for p in join]
+            between = QPointF(sum(x for x, _ in places) / 2, sum(y for _, y in places) / 2)
+            self._put(plan, part, between, join)
+        elif port is None:
             self._put(plan, part, middle, None)
         else:
             self._put_at_port(plan, part, None, port)
@@ -112,6 +118,13 @@ class Placing(QObject):
         spread = 2.6 * anchor.y() if neighbour.part.ports > 2 else anchor.y()
         x = neighbour.at[0] + anchor.x() + side * (APART + own.width() / 2)
         return QPointF(x, neighbour.at[1] + spread)
+
+    def _join_behind(self, part_id: str) -> Join | None:
+        """The join at the far port of a part with one or two ports."""
+        ports = self.store.plan.placed(part_id).ports()
+        if len(ports) > 2:
+            return None
+        return next((join for join in self.store.plan.joins if ports[-1] in join), None)
 
     def _free_port(self, part_id: str) -> Port | None:
         """The first free port away from the radio: the last port of a two-port, else the lowest number above 1."""

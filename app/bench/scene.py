@@ -121,6 +121,9 @@ class BenchScene(QGraphicsScene):
             item.trouble = part_id in stopped
             item.open_ports = frozenset(range(1, len(item.ports) + 1)) - ports.get(part_id, set())
             told = [html.escape(f"{p.text} {p.advice}") for p in self.store.problems if p.part_id == part_id]
+            name = getattr(item.shown.placed.part, "matched_set", None)
+            if name:
+                told.append(html.escape(f"Matched set {name}: its sections share cable, length and ends."))
             item.setToolTip(f"<p>{'<br>'.join(told)}</p>" if told else "")
 
     def _show_flags(self) -> None:

@@ -71,7 +71,8 @@ class CutRow(QWidget):
         layout = QVBoxLayout(self)
         layout.setContentsMargins(0, 0, 0, 0)
         layout.setSpacing(4)
-        layout.addWidget(plain_label("Cut to", "soft"))
+        self._heading = plain_label("Cut to", "soft")
+        layout.addWidget(self._heading)
         layout.addLayout(_in_line(*self.chips.values()))
         layout.addLayout(_in_line(self.any, self.alike))
         layout.addWidget(self.degrees)
@@ -94,6 +95,7 @@ class CutRow(QWidget):
         around = Around(plan, coax, placed.id)
         cable = around.cable
         at = f"at {format_frequency(around.frequency_hz)}"
+        set_text(self._heading, f"Cut to, {at}")
         for waves, chip in self.chips.items():
             length = "" if cable is None else f": {_told(cut_length_m(cable, CUTS[waves], around.frequency_hz))}"
             _tell(chip, f"{CUTS[waves]}° {at}{length}. {BESIDE}")

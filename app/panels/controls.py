@@ -2,10 +2,11 @@
 
 from __future__ import annotations
 
-from PySide6.QtCore import QPointF, Qt, Signal
+from PySide6.QtCore import QEvent, QPointF, Qt, Signal
 from PySide6.QtGui import (
     QFocusEvent,
     QKeyEvent,
+    QKeySequence,
     QPainter,
     QPaintEvent,
     QPalette,
@@ -55,6 +56,16 @@ class LineField(QLineEdit):
     def resizeEvent(self, event: QResizeEvent) -> None:
         super().resizeEvent(event)
         self._place_note()
+
+    def event(self, event: QEvent) -> bool:
+        # With nothing typed that is not taken yet, undo and redo mean the plan's, not the field's.
+        undoes = isinstance(event, QKeyEvent) and (
+            event.matches(QKeySequence.StandardKey.Undo) or event.matches(QKeySequence.StandardKey.Redo)
+        )
+        if undoes and event.type() == QEvent.Type.ShortcutOverride and not self.isModified():
+            event.ignore()
+            return False
+        return super().event(event)
 
     def keyPressEvent(self, event: QKeyEvent) -> None:
         if event.key() == Qt.Key.Key_Escape:

@@ -45,6 +45,7 @@ class StarterDialog(QDialog):
         self.refusal = QLabel()
         self.refusal.setTextFormat(Qt.TextFormat.PlainText)
         self.refusal.setWordWrap(True)
+        self.refusal.setMinimumHeight(34)  # so that nothing moves when there is something to say
         self.refusal.setFont(font("small"))
         self.refusal.setStyleSheet(f"color: {look.fails}")
         form = QFormLayout()

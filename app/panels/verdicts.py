@@ -43,6 +43,14 @@ def judged(limit: str, worst: float, wanted: float) -> Verdict:
     return "near" if margin < NEAR_SHARE * abs(wanted) else "holds"
 
 
+SPOKEN: dict[Verdict, str] = {
+    "holds": "holds",
+    "near": "holds, near its limit",
+    "fails": "fails",
+    "unknown": "no antenna is driven",
+}
+
+
 def verdicts_of(answer: Answer) -> list[Shown]:
     """What the strip says of an answer, in the order of the limits."""
     told = {v.limit: v for v in answer.verdicts}
@@ -52,8 +60,10 @@ def verdicts_of(answer: Answer) -> list[Shown]:
         if limit in told:
             v = told[limit]
             state, sign = judged(limit, v.worst, v.wanted), "≥" if at_least else "≤"
+            if limit != "return_loss_db" and not answer.mark.antenna_current_a.any():
+                state = "unknown"  # no antenna is driven: there is nothing to judge
             wanted = editable_quantity(v.wanted, unit=spec.unit)
-            spoken = {"holds": "holds", "near": "holds, near its limit", "fails": "fails"}[state]
+            spoken = SPOKEN[state]
             spoken = f"wants {'at least' if at_least else 'at most'} {wanted}, {spoken}"
             figure, wants, frequency_hz = _figure(limit, v.worst), f"{sign} {wanted}", v.frequency_hz
         elif limit in ALWAYS_SHOWN or (limit in SHOWN_WITH_ANTENNAS and len(answer.antenna_ids) > 1):

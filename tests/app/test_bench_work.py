@@ -28,6 +28,22 @@ def hands(qtbot: QtBot) -> Iterator[Hands]:
 # Joining
 
 
+def test_a_loose_part_held_over_a_join_is_put_into_it(hands: Hands) -> None:
+    """In the same act as the move."""
+    middle = (hands.place("leg A:2") + hands.place("A:1")) / 2
+    hands.drag("pad", middle, keys=ALT, drop=False)
+    assert words(hands) == ["put into leg A:2 – A:1"]
+    hands.release(middle, keys=ALT)
+    assert hands.store.plan.mate(Port("leg A", 2)) == Port("pad", 1)
+    assert hands.store.plan.mate(Port("A", 1)) == Port("pad", 2)
+    assert undone_by(hands) == (1, "Put pad into the join")
+    hands.drag("pad", (156, 300), keys=ALT)
+    assert hands.store.plan.mate(Port("A", 1)) == Port("pad", 2)
+    hands.store.stack.undo()
+    hands.store.stack.undo()
+    assert hands.store.plan == plan()
+
+
 def test_a_join_is_pulled_from_port_to_port(hands: Hands) -> None:
     before = shown(hands)
     hands.drag("pad:1", "T1:4", drop=False)
@@ -167,7 +183,8 @@ def test_escape_takes_a_dragged_end_back(hands: Hands) -> None:
     hands.click("leg A")
     hands.drag(end, end + QPointF(40, 0), drop=False)
     hands.key(Qt.Key.Key_Escape)
-    assert (hands.store.plan, hands.store.stack.canUndo(), words(hands)) == (plan(), False, [])
+    stack = hands.store.stack
+    assert (hands.store.plan, stack.canUndo(), stack.canRedo(), words(hands)) == (plan(), False, False, [])
     hands.release(end + QPointF(40, 0))
     assert hands.store.plan == plan()
 

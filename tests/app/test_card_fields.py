@@ -91,7 +91,7 @@ def test_a_value_out_of_range_names_the_range(shown: Shown) -> None:
     shown.select("pad")
     shown.write("Loss", "-3 dB")
     assert shown.part("pad").loss_db == 3
-    assert "✗ Loss wants a number dB, at least 0, got -3." in shown.texts()
+    assert "✗ Loss wants a number in dB, at least 0, got -3." in shown.texts()
     shown.write("Loss", "6")
     assert shown.part("pad").loss_db == 6
     assert not [t for t in shown.texts() if t.startswith("✗")]

@@ -111,7 +111,7 @@ def test_degrees_that_are_none_say_why_and_escape_leaves(shown: Shown) -> None:
     shown.write("Degrees", "a quarter")
     assert "cannot be read as an angle" in faults(shown)[0]
     shown.write("Degrees", "-90")
-    assert faults(shown)[0].startswith("✗ Length wants a number m, at least 0")
+    assert faults(shown)[0].startswith("✗ Length wants a number in m, at least 0")
     assert shown.line("Degrees").text() == "-90"
     line = shown.line("Degrees")
     shown.qtbot.keyClick(line, Qt.Key.Key_Escape)

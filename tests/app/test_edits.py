@@ -115,6 +115,33 @@ def test_lengths_are_turned_to_whole_nanometres_and_never_below_zero() -> None:
     assert [coax(plan, i).length_m for i in ("one", "two", "three")] == [0.05, 0.0, 0.3]
 
 
+def test_a_matched_set_is_turned_as_one_and_only_once() -> None:
+    plan = chain()
+    for part_id in ("one", "three"):
+        plan = edits.changed_part(plan, part_id, matched_set="A")
+    for chosen in (["one"], ["one", "three"]):
+        after = edits.turned_length(plan, chosen, 0.05)
+        assert [coax(after, i).length_m for i in ("one", "two", "three")] == [0.15, 0.1, 0.15]
+
+
+@pytest.mark.parametrize(
+    ("part", "grows"),
+    [
+        (Tee(ports=1025), True),
+        (Tee(ports=1026), False),
+        (Splitter(form="resistive", outputs=1023), True),
+        (Splitter(form="resistive", outputs=1024), False),
+        (Splitter(form="rat_race", centre_hz=868e6), False),
+        (Pad(loss_db=1.0), False),
+    ],
+)
+def test_a_junction_grows_up_to_its_range(part: Part, grows: bool) -> None:
+    assert edits.can_grow(part) == grows
+    if grows:
+        plan, part_id = edits.added(Sketch().plan(), part, (0, 0))
+        assert edits.with_ports(plan, part_id, part.ports + 1).placed(part_id).part.ports == part.ports + 1
+
+
 def test_a_moved_part_is_the_same_part() -> None:
     plan = chain()
     after = edits.moved(plan, {"two": (12.0, -36.0), "A": (7.5, 0.25)})

@@ -167,7 +167,7 @@ def test_limits_are_set_and_taken_away(shown: Shown) -> None:
     shown.write("Harness loss", "1 dB")
     shown.write("Phase balance", "-3")
     assert shown.store.plan.limits == Limits(phase_balance_deg=5, harness_loss_db=1)
-    assert shown.faults() == ["✗ Phase balance wants a number deg, at least 0, got -3."]
+    assert shown.faults() == ["✗ Phase balance wants a number in deg, at least 0, got -3."]
     visible = {w.accessibleName() for w in shown.card.findChildren(QLineEdit) if w.isVisible()}
     assert "Isolation" in visible
     assert "Axial ratio" not in visible, "nothing judges it yet"
@@ -234,7 +234,7 @@ def test_figures_of_a_cable(shown: Shown) -> None:
     shown.write("50 thin, Impedance", "-50")
     cable = shown.store.plan.cables["50 thin"]
     assert (cable.z0_ohm, cable.velocity_factor, cable.skin_db_per_100m) == (50, 0.695, 2.5)
-    assert shown.faults() == ["✗ Impedance wants a number ohm, more than 0, got -50."]
+    assert shown.faults() == ["✗ Impedance wants a number in ohm, more than 0, got -50."]
     assert "50 Ω · vf 0.695 · 0.74 dB/m at 868 MHz" in shown.texts()
     shown.press("50 thin, hide figures")
     assert not [w for w in shown.card.findChildren(QLineEdit) if w.isVisible() and "Skin" in w.accessibleName()]

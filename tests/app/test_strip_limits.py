@@ -154,7 +154,7 @@ def test_escape_leaves_all_as_it_was(qtbot: QtBot, strip: VerdictStrip) -> None:
     ("text", "sentence"),
     [
         ("a lot", "'a lot' cannot be read as a level"),
-        ("-3", "Return loss wants a number dB, at least 0, got -3."),
+        ("-3", "Return loss wants a number in dB, at least 0, got -3."),
     ],
 )
 def test_what_is_no_limit_says_why_and_waits(qtbot: QtBot, strip: VerdictStrip, text: str, sentence: str) -> None:
