@@ -28,7 +28,7 @@ def whole(qtbot: QtBot) -> tuple[Window, Hands]:
 
 @pytest.fixture
 def hands(whole: tuple[Window, Hands]) -> Iterator[Hands]:
-    """Hands on the window's bench that wave every menu and question away; afterwards nothing is left of what they began."""
+    """Hands on the bench that wave every menu and question away; afterwards nothing is left of what they began."""
     made = whole[1]
     closer = QTimer()
     closer.timeout.connect(_wave_away)

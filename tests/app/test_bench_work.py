@@ -178,6 +178,14 @@ def test_a_swells_end_is_dragged_in_one_act(hands: Hands) -> None:
     assert hands.store.plan == plan()
 
 
+def test_two_drags_of_an_end_are_two_acts(hands: Hands) -> None:
+    hands.click("leg A")
+    for _ in range(6):
+        end = hands.place("leg A") + QPointF(hands.scene.parts["leg A"].body.width() / 2 - 3, 0)
+        hands.drag(end, end + QPointF(6, 0))
+    assert undone_by(hands) == (6, "Turn leg A")
+
+
 def test_escape_takes_a_dragged_end_back(hands: Hands) -> None:
     end = hands.place("leg A") + QPointF(86, 0)
     hands.click("leg A")
