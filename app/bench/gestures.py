@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from itertools import count
 from typing import Protocol
 
 from PySide6.QtCore import QLineF, QPoint, QPointF, QRectF, Qt
@@ -274,6 +275,10 @@ class PullJoin(Gesture):
         self.hint.remove()
 
 
+_DRAGS = count()
+"""Tells one drag of an end from the next, which may be the same object again."""
+
+
 class TurnEnd(Gesture):
     """Drag a swell's end: the section gets longer or shorter, live, with its length beside the pointer."""
 
@@ -281,6 +286,7 @@ class TurnEnd(Gesture):
         super().__init__(scene, start)
         self.part_id = part_id
         self.plan = self.store.plan
+        self.act = f"end {next(_DRAGS)}"
         self.moved = False
         item = scene.parts[part_id]
         self.centre_x, self.grip = item.pos().x(), abs(start.x() - item.pos().x()) - item.body.width() / 2
@@ -313,7 +319,7 @@ class TurnEnd(Gesture):
         self.words.setPos(at + QPointF(16, -26))
 
     def _put(self, text: str, plan: Plan) -> None:
-        self.store.edit(text, plan, merge=f"end {id(self)}")
+        self.store.edit(text, plan, merge=self.act)
 
     def release(self, at: QPointF, screen: QPoint) -> None:
         self.scene.removeItem(self.words)

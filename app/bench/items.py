@@ -68,6 +68,7 @@ class PartItem(QGraphicsItem):
 
     def shape(self) -> QPainterPath:
         path = QPainterPath()
+        path.setFillRule(Qt.FillRule.WindingFill)  # no holes where body and ports overlap
         path.addRect(self.body.adjusted(-5, -5, 5, 5))
         for port in self.ports:
             path.addEllipse(port, GRAB, GRAB)

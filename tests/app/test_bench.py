@@ -95,6 +95,13 @@ def test_a_box_selects_what_it_touches(hands: Hands) -> None:
     assert undone_by(hands) == (0, "")
 
 
+def test_a_part_is_taken_hold_of_anywhere_on_it(hands: Hands) -> None:
+    for part_id, item in hands.scene.parts.items():
+        body = item.body
+        for x in range(round(body.left()) - 4, round(body.right()) + 5):
+            assert hands.scene.part_under(item.pos() + QPointF(x, 1)) is item, f"{part_id} at {x} from its middle"
+
+
 def test_escape_takes_a_box_back(hands: Hands) -> None:
     hands.click("pad")
     before = shown(hands)
