@@ -16,7 +16,7 @@ from feedlib.conventions import WAVE_OHM, Array, ComplexArray
 from feedlib.errors import SolveError
 from feedlib.graph import OPEN
 from feedlib.parts import Radio
-from feedlib.parts.base import Chain, End, Junction, Line, Lines, ManyPort, TwoPort
+from feedlib.parts.base import CableFigures, Chain, End, Junction, Line, Lines, ManyPort, TwoPort
 from feedlib.parts.measured import Measured
 from feedlib.plan import Plan
 from feedlib.scatter import Dense, Response, Scatter, Undetermined, joined, renormalised
@@ -62,22 +62,18 @@ def line_values(plan: Plan, topology: Topology) -> LineValues:
     """The values of the plan's lines."""
     found: dict[Line, int] = {}
     rows = []
-    lines_of: dict[int, tuple[Line, ...]] = {}
-    for part, n in topology.lines:
-        lines = lines_of.get(part)
-        if lines is None:
-            lines = lines_of[part] = _lines(plan, part)
-        rows.append(found.setdefault(lines[n], len(found)))
+    known: dict[int, tuple[Lines, CableFigures | None, tuple[Line, ...]]] = topology.kept("lines", dict)
+    for index, n in topology.lines:
+        part = cast(Lines, plan.parts[index].part)
+        name = getattr(part, "cable", None)
+        cable = None if name is None else plan.cables[name]
+        before = known.get(index)
+        if before is None or before[0] is not part or before[1] is not cable:  # what did not change is the same object
+            before = known[index] = part, cable, part.lines(cable)
+        rows.append(found.setdefault(before[2][n], len(found)))
     columns = np.array(list(found), float).reshape(len(found), len(Line._fields)).T
     z0_ohm, delay_s, skin_np, dielectric_np, flat_np = columns
     return LineValues(z0_ohm, delay_s, skin_np, dielectric_np, flat_np, np.array(rows, np.intp))
-
-
-def _lines(plan: Plan, part: int) -> tuple[Line, ...]:
-    lines = plan.parts[part].part
-    assert isinstance(lines, Lines)
-    cable = getattr(lines, "cable", None)
-    return lines.lines(None if cable is None else plan.cables[cable])
 
 
 def line_table(values: LineValues, frequency_hz: Array) -> LineTable:
