@@ -118,7 +118,7 @@ def growth(painter: QPainter) -> float:
     return min(1.5, max(1.0, 0.95 / max(painter.worldTransform().m11(), 0.1)))
 
 
-FAR = 0.55
+FAR = 0.43
 """Below this zoom a part's own figures and the impedance flags would cover each other, and are left out."""
 
 
