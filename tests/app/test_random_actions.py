@@ -8,7 +8,7 @@ import random
 from collections.abc import Callable, Iterator
 
 import pytest
-from PySide6.QtCore import QPointF
+from PySide6.QtCore import QCoreApplication, QEvent, QPointF
 from PySide6.QtWidgets import QApplication
 
 from app.editing import cutting, edits, matched
@@ -21,7 +21,7 @@ from feedlib.errors import PlanError
 from feedlib.parts import Coax
 from feedlib.plan_file import format_plan
 
-STEPS = 600
+STEPS = 10_000
 MOST_PARTS = 40
 SEED = int(os.environ.get("FEEDWRIGHT_SEED", "20261201"))
 
@@ -169,6 +169,7 @@ def test_random_steps(window: Window, monkeypatch: pytest.MonkeyPatch) -> None:
     for n in range(STEPS):
         monkey.step()
         if n % 20 == 0:
+            QCoreApplication.sendPostedEvents(None, QEvent.Type.DeferredDelete)  # what an event loop does by itself
             monkey.agree()
         if n % 200 == 0:
             QApplication.processEvents()
