@@ -153,13 +153,13 @@ def _head(head: dict[int, int], element: int) -> int:
     return element
 
 
-def joins_away(plan: Plan, start: str) -> dict[str, int]:
-    """How many joins each part is away from `start`; parts that are not reached are left out."""
+def joins_away(plan: Plan, *starts: str) -> dict[str, int]:
+    """How many joins each part is away from the nearest of `starts`; parts that are not reached are left out."""
     beside: dict[str, list[str]] = {p.id: [] for p in plan.parts}
     for a, b in plan.joins:
         beside[a.part].append(b.part)
         beside[b.part].append(a.part)
-    away, row = {start: 0}, [start]
+    away, row = dict.fromkeys(starts, 0), list(starts)
     for part in row:
         for other in beside[part]:
             if other not in away:

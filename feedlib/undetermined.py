@@ -8,10 +8,10 @@ another ratio it holds the voltage at zero, as a short does. Known by union-find
 from __future__ import annotations
 
 import math
-from collections import deque
 from collections.abc import Iterator
 
 from feedlib.errors import SolveError
+from feedlib.graph import joins_away
 from feedlib.parts import Antenna, Load, Lumped, Radio, Transformer
 from feedlib.parts.base import Junction, Lines, Part
 from feedlib.plan import Placed, Plan, Port
@@ -26,7 +26,7 @@ def refuse_undetermined(plan: Plan) -> None:
 
     Only what the radio or an antenna reaches counts; the rest is not solved.
     """
-    reached = _reached(plan)
+    reached = joins_away(plan, *(p.id for p in plan.parts if isinstance(p.part, Radio | Antenna)))
     nets = _Nets()
     for a, b in plan.joins:
         nets.tie(a, b, 1.0)
@@ -99,18 +99,3 @@ def _no_length(part: Part) -> bool:
     if getattr(part, "loss_db", 0) > 0 or getattr(part, "length_m", 0) > SHORTEST_M:
         return False
     return all(end is None or end.length_m <= SHORTEST_M for end in getattr(part, "ends", ()))
-
-
-def _reached(plan: Plan) -> set[str]:
-    beside: dict[str, list[str]] = {p.id: [] for p in plan.parts}
-    for a, b in plan.joins:
-        beside[a.part].append(b.part)
-        beside[b.part].append(a.part)
-    found = {p.id for p in plan.parts if isinstance(p.part, Radio | Antenna)}
-    waiting = deque(found)
-    while waiting:
-        for other in beside[waiting.popleft()]:
-            if other not in found:
-                found.add(other)
-                waiting.append(other)
-    return found
